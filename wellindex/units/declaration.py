@@ -1,0 +1,191 @@
+"""Read a formula's annotations once, at import: a wrong declaration breaks the import."""
+
+from __future__ import annotations
+
+import inspect
+import types
+import typing
+from collections.abc import Callable
+from typing import Annotated, Any, Literal, NamedTuple, get_args, get_origin
+
+import numpy as np
+
+from wellindex.errors import ArgumentsError, DomainError, ShapeError, UnitsError, WellIndexError
+from wellindex.units.checks import place
+from wellindex.units.kinds import Either, Kind
+from wellindex.units.reading import EitherReader, KindReader, Problem
+
+_readers: dict[int, KindReader] = {}
+
+
+class Parameter(NamedTuple):
+    """One argument: how to read it and what else it may be."""
+
+    name: str
+    reader: KindReader | None
+    choices: tuple[Any, ...]
+    instances: tuple[type, ...]
+    optional: bool
+
+
+def _reader(kind: Kind | Either) -> KindReader:
+    if id(kind) not in _readers:
+        make = EitherReader if isinstance(kind, Either) else KindReader
+        _readers[id(kind)] = make(kind)  # type: ignore[arg-type]
+    return _readers[id(kind)]
+
+
+def _parameter(name: str, annotation: Any) -> Parameter:
+    options = [annotation]
+    if get_origin(annotation) in (typing.Union, types.UnionType):
+        options = list(get_args(annotation))
+    optional = type(None) in options
+    options = [option for option in options if option is not type(None)]
+    first = options[0]
+    if get_origin(first) is Annotated and len(options) == 1:
+        kind = first.__metadata__[0]
+        if isinstance(kind, (Kind, Either)):
+            return Parameter(name, _reader(kind), (), (), optional)
+    if get_origin(first) is Literal and len(options) == 1:
+        return Parameter(name, None, get_args(first), (), optional)
+    instances = tuple(get_origin(option) or option for option in options)
+    if first is Any or not all(isinstance(option, type) for option in instances):
+        raise TypeError(f"argument {name!r} is declared with no kind: {annotation!r}")
+    return Parameter(name, None, (), instances, optional)
+
+
+def answer_kind(hints: dict[str, Any]) -> Kind | None:
+    """Return the kind of a formula's answer, or None where it answers with an object."""
+    marks = getattr(hints.get("return"), "__metadata__", (None,))
+    return marks[0] if isinstance(marks[0], Kind) else None
+
+
+class Declaration:
+    """The arguments of one formula, ready to read.
+
+    Parameters
+    ----------
+    body : callable
+        The formula in SI.
+    first : {"self", "check"}
+        Name of the leading argument that callers do not give.
+    """
+
+    def __init__(self, body: Callable[..., Any], first: str | None) -> None:
+        self.name = body.__qualname__.removesuffix(".__init__")
+        signature = inspect.signature(body)
+        hints = typing.get_type_hints(body, include_extras=True)
+        given = [p for p in signature.parameters.values() if p.name != first]
+        bare = [p.replace(annotation=p.empty) for p in given]
+        self.signature = signature.replace(parameters=bare, return_annotation=signature.empty)
+        self.answer = answer_kind(hints)
+        self.parameters: dict[str, Parameter] = {}
+        self.defaults: dict[str, Any] = {}
+        for parameter in given:
+            if parameter.name not in hints:
+                raise TypeError(f"{self.name}: argument {parameter.name!r} has no kind")
+            self.parameters[parameter.name] = _parameter(parameter.name, hints[parameter.name])
+            if parameter.default is not parameter.empty:
+                self.defaults[parameter.name] = self._default(parameter.name, parameter.default)
+        self.positional = [p.name for p in given if p.kind is p.POSITIONAL_OR_KEYWORD]
+        self.required = frozenset(self.parameters) - frozenset(self.defaults)
+
+    def _default(self, name: str, value: Any) -> Any:
+        parameter = self.parameters[name]
+        if value is None and not parameter.optional:
+            raise TypeError(f"{self.name}: {name!r} may not be None, yet that is its default")
+        if parameter.choices and value not in (*parameter.choices, None):
+            raise TypeError(f"{self.name}: default of {name!r} is not among its choices")
+        if parameter.reader is None or value is None:
+            return value
+        default = np.asarray(value, dtype=np.float64) if np.ndim(value) else float(value)
+        if parameter.reader.check(default) is not None:
+            raise TypeError(f"{self.name}: default of {name!r} is outside its range")
+        return default
+
+    def by_name(self, args: tuple[Any, ...], given: dict[str, Any]) -> dict[str, Any]:
+        """Return every given argument by its name."""
+        if len(args) > len(self.positional):
+            most = len(self.positional)
+            raise TypeError(
+                f"{self.name}() takes {most} positional arguments; give the others by name"
+            )
+        names = self.positional[: len(args)]
+        for name in names:
+            if name in given:
+                raise TypeError(f"{self.name}() got {name!r} twice")
+        return {**dict(zip(names, args, strict=True)), **given}
+
+    def check_names(self, given: dict[str, Any]) -> None:
+        """Raise `TypeError` for unknown and missing arguments, all in one."""
+        from difflib import get_close_matches
+
+        parts = []
+        for name in given:
+            if name not in self.parameters:
+                close = get_close_matches(name, self.parameters, n=1)
+                hint = f"; did you mean {close[0]!r}?" if close else ""
+                parts.append(f"no argument {name!r}{hint}")
+        missing = [n for n in self.parameters if n in self.required and n not in given]
+        if missing:
+            parts.append("missing " + ", ".join(repr(name) for name in missing))
+        if parts:
+            raise TypeError(f"{self.name}(): " + "; ".join(parts))
+
+    def read(self, name: str, value: Any) -> Any:
+        """Return one argument in SI (kinds) or as it is; raise `Problem`."""
+        parameter = self.parameters[name]
+        if value is None and parameter.optional:
+            return None
+        if parameter.reader is not None:
+            return parameter.reader.read(value)
+        if parameter.choices and not (isinstance(value, str) and value in parameter.choices):
+            choices = ", ".join(repr(choice) for choice in parameter.choices)
+            raise Problem(DomainError, f"one of {choices}", repr(value), "use one of these")
+        if parameter.instances and not isinstance(value, parameter.instances):
+            wanted = " or ".join(kind.__name__ for kind in parameter.instances)
+            raise Problem(UnitsError, wanted, repr(type(value).__name__), f"give a {wanted}")
+        return value
+
+    def read_si(self, name: str, value: Any) -> Any:
+        """Return one argument that is given in SI, without a unit."""
+        reader = self.parameters[name].reader
+        if reader is None or value is None:
+            return self.read(name, value)
+        return reader.read_si(value)
+
+    def check(self, name: str, value: Any) -> None:
+        """Raise `Problem` where an SI value lies outside the range of its kind."""
+        reader = self.parameters[name].reader
+        if reader is None or value is None:
+            return
+        bad = reader.check(value)
+        if bad is not None:
+            raise Problem(DomainError, *self.range_words(name, value, bad))
+
+    def range_words(self, name: str, value: Any, bad: Any) -> tuple[str, str, str]:
+        """Say what is out of range: needed, given, remedy."""
+        reader = self.parameters[name].reader
+        assert reader is not None
+        value = getattr(value, "value", value)
+        flat = int(np.argmax(bad.mask))
+        number = float(np.ravel(value)[flat])
+        unit = "" if reader.kind.si == "dimensionless" else f" {reader.kind.si}"
+        where = f" at {place(flat, np.shape(value))}" if np.ndim(value) else ""
+        return f"{reader.kind.name}, {reader.kind.range.words}", f"{number:.6g}{unit}{where}", ""
+
+    def raise_for(self, problems: dict[str, Problem]) -> None:
+        """Raise one error that lists every bad argument."""
+        lines = []
+        for name, problem in problems.items():
+            remedy = f"; {problem.remedy}" if problem.remedy else ""
+            lines.append(f"  {name}: needs {problem.needed}; got {problem.given}{remedy}")
+        errors = {problem.error for problem in problems.values()}
+        error: type[WellIndexError] = errors.pop() if len(errors) == 1 else ArgumentsError
+        count = "1 argument is" if len(lines) == 1 else f"{len(lines)} arguments are"
+        raise error(f"{self.name}(): {count} wrong\n" + "\n".join(lines)) from None
+
+    def raise_shapes(self, arrays: dict[str, Any]) -> None:
+        """Raise `ShapeError` naming the shapes that do not broadcast."""
+        shapes = ", ".join(f"{name} {np.shape(value)}" for name, value in arrays.items())
+        raise ShapeError(f"{self.name}(): these shapes do not fit together: {shapes}") from None

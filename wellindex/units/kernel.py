@@ -1,0 +1,83 @@
+"""The ``.si`` form of a formula: its own signature, range checks inline, no loop over arguments.
+
+A loop over arguments costs as much as the formula. The function is written out once, at import,
+from the declaration (as data-class generators do), so that it costs no more than one by hand.
+"""
+
+from __future__ import annotations
+
+import linecache
+import math
+from collections.abc import Callable
+from typing import Any
+
+import numpy as np
+
+from wellindex.units.checks import AT_ONCE
+from wellindex.units.declaration import Declaration, Parameter
+from wellindex.units.reading import Problem
+
+
+def _condition(parameter: Parameter) -> str | None:
+    name = parameter.name
+    if parameter.reader is not None:
+        low, high = parameter.reader.low, parameter.reader.high
+        test = f"{name}.__class__ is float and {low!r} < {name} < {high!r}"
+    elif parameter.choices:
+        test = f"{name} in {parameter.choices!r}"
+    else:
+        return None
+    return f"({name} is None or {test})" if parameter.optional else f"({test})"
+
+
+def compile_si(body: Callable[..., Any], declaration: Declaration) -> Callable[..., Any]:
+    """Write and compile the SI form of `body`."""
+    names = list(declaration.parameters)
+    conditions = [c for c in map(_condition, declaration.parameters.values()) if c]
+    arguments = [
+        f"{name}=_defaults[{name!r}]" if name in declaration.defaults else name for name in names
+    ]
+    passed = ", ".join(f"{name}={name}" for name in names)
+    source = (
+        f"def si(*, {', '.join(arguments)}):\n"
+        f"    if {' and '.join(conditions)}:\n"
+        f"        return _body(_check, {passed})\n"
+        f"    return _general(dict({passed}))\n"
+    )
+    filename = f"<wellindex si {declaration.name}>"
+    linecache.cache[filename] = (len(source), None, source.splitlines(keepends=True), filename)
+
+    def general(values: dict[str, Any]) -> Any:
+        return body(AT_ONCE, **_read_si(declaration, values))
+
+    namespace: dict[str, Any] = {
+        "_body": body,
+        "_check": AT_ONCE,
+        "_defaults": declaration.defaults,
+        "_general": general,
+        "inf": math.inf,
+    }
+    exec(compile(source, filename, "exec"), namespace)
+    si: Callable[..., Any] = namespace["si"]
+    si.__qualname__ = f"{declaration.name}.si"
+    si.__doc__ = f"`{declaration.name}` on SI floats or arrays; see there."
+    return si
+
+
+def _read_si(declaration: Declaration, values: dict[str, Any]) -> dict[str, Any]:
+    problems: dict[str, Problem] = {}
+    read: dict[str, Any] = {}
+    for name, value in values.items():
+        try:
+            read[name] = declaration.read_si(name, value)
+            declaration.check(name, read[name])
+        except Problem as problem:
+            problems[name] = problem
+    if problems:
+        declaration.raise_for(problems)
+    arrays = {name: v for name, v in read.items() if isinstance(v, np.ndarray)}
+    try:
+        np.broadcast_shapes(*(array.shape for array in arrays.values()))
+    except ValueError:
+        declaration.raise_shapes(arrays)
+    return read

@@ -1,0 +1,275 @@
+"""Read one given value of one kind into SI: from our registry, another one, text or a number."""
+
+from __future__ import annotations
+
+import numbers
+from decimal import Decimal
+from functools import lru_cache
+from typing import Any, NamedTuple
+
+import numpy as np
+import pint
+
+from wellindex.errors import DomainError, ShapeError, UnitsError, WellIndexError
+from wellindex.units.definitions import GAUGE_UNITS, MISTAKEN_ELSEWHERE, OFFSET_UNITS
+from wellindex.units.elementwise import greatest, least
+from wellindex.units.kinds import Either, Given, Kind
+from wellindex.units.registry import ureg
+from wellindex.units.systems import current
+from wellindex.units.text import split_number
+
+OUR_QUANTITY = ureg.Quantity
+BARREL = 0.158987294928
+_REMEMBERED = 1024
+
+
+class Problem(Exception):
+    """One argument that cannot be used: what is needed, what was given, the remedy."""
+
+    def __init__(self, error: type[WellIndexError], needed: str, given: str, remedy: str) -> None:
+        super().__init__(needed)
+        self.error = error
+        self.needed = needed
+        self.given = given
+        self.remedy = remedy
+
+
+class Factor(NamedTuple):
+    """The SI value of one unit; `units` keeps the identity that the memory goes by."""
+
+    units: Any
+    si: float
+    registry: Any
+
+
+class Bad(NamedTuple):
+    """Elements of an array outside the range of their kind."""
+
+    mask: Any
+    reason: str
+
+
+def _shown(value: Any) -> str:
+    if isinstance(value, pint.Quantity) and np.ndim(value.magnitude) == 0:
+        value = f"{value.magnitude} {value.units}".rstrip()
+    text = " ".join(repr(value).split())
+    return text if len(text) <= 70 else text[:67] + "..."
+
+
+def _plain_remedy(kind: Kind) -> str:
+    system = current().name
+    return f"give a quantity or text with its unit, such as '... {kind.unit(system)}'"
+
+
+@lru_cache(maxsize=4096)
+def _parse(text: str) -> tuple[float, Any]:
+    ureg._guard(text)
+    number, unit = split_number(text)
+    return number, ureg.parse_units(unit, as_delta=False)._units if unit else None
+
+
+def _wrong_dimension(kind: Kind, units: Any, shown: str) -> Problem:
+    names = set(dict(units))
+    remedy = "use a unit such as " + " or ".join(dict.fromkeys((kind.metric, kind.oilfield)))
+    if names & {"darcy", "millidarcy"} and "[time]" in kind.dimension:
+        remedy = "D is darcy here; write 'day' for a day"
+    elif "[standard_volume]" in kind.dimension and "[length]" not in kind.dimension:
+        remedy += "; a surface volume is not a reservoir volume"
+    elif "reservoir" in kind.name:
+        remedy += "; a formation volume factor turns surface into reservoir volumes"
+    for name in names & set(MISTAKEN_ELSEWHERE):
+        remedy = MISTAKEN_ELSEWHERE[name]
+    return Problem(UnitsError, kind.name, shown, remedy)
+
+
+def _check_names(kind: Kind, units: Any, registry: Any, shown: str) -> None:
+    names = set(dict(units))
+    for name in names & set(MISTAKEN_ELSEWHERE):
+        raise Problem(UnitsError, kind.name, shown, MISTAKEN_ELSEWHERE[name])
+    if "barrel" in names:
+        cubic_metres = registry.convert(1.0, registry.UnitsContainer({"barrel": 1}), "meter**3")
+        if abs(cubic_metres / BARREL - 1.0) > 1e-6:
+            raise Problem(
+                UnitsError,
+                kind.name,
+                shown,
+                f"that registry's barrel holds {cubic_metres:.5f} m3; the trade's holds 42 "
+                "gallons: write 'oil_barrel' there, or 'rb' or 'stb' here",
+            )
+
+
+def _check_zero(kind: Kind, units: Any, shown: str) -> None:
+    names = set(dict(units))
+    if any(name.startswith("delta_") for name in names) and kind.measured_from_zero:
+        raise Problem(UnitsError, kind.name, shown, "this is a difference of two, not a value")
+    if names & OFFSET_UNITS and kind.measured_from_zero is False:
+        raise Problem(UnitsError, kind.name, shown, "a difference has no gauge: write psi or bar")
+
+
+class KindReader:
+    """Reads values of one kind; remembers the SI factor of each unit it has accepted."""
+
+    def __init__(self, kind: Kind) -> None:
+        self.kind = kind
+        self.low = kind.range.low
+        self.high = kind.range.high
+        self.ours: dict[int, Factor] = {}
+        self.others: dict[int, Factor] = {}
+
+    def read(self, value: Any) -> Any:
+        """Return `value` in SI, unchecked against the range; raise `Problem` otherwise."""
+        if isinstance(value, pint.Quantity):
+            magnitude = value.magnitude
+            if type(magnitude) is not float:
+                magnitude = _floats(magnitude, self.kind, value)
+            return self._in_si(magnitude, value._units, value._REGISTRY, value)
+        if isinstance(value, str):
+            return self._text(value)
+        if isinstance(value, (list, tuple)):
+            return self._sequence(value)
+        return self._number(value, value)
+
+    def read_si(self, value: Any) -> Any:
+        """Return a number or array that is given in SI, without a unit."""
+        return _floats(value, self.kind, value)
+
+    def raw(self, value: Any) -> tuple[np.ndarray[Any, Any], float] | None:
+        """Return a float array and its SI factor, unscaled, or None where that is not enough."""
+        if not isinstance(value, pint.Quantity) or type(value.magnitude) is not np.ndarray:
+            return None
+        factor = self._factor(value._units, value._REGISTRY, value)
+        if factor is None or value.magnitude.dtype != np.float64:
+            return None
+        return value.magnitude, factor.si
+
+    def check(self, value: Any) -> Bad | None:
+        """Return the elements of an SI value outside the range, or None."""
+        if isinstance(value, float):
+            fine = self.low < value < self.high
+            return None if fine else Bad(np.True_, self.reason)
+        if self.low < least(value) and greatest(value) < self.high:
+            return None
+        return Bad(~((value > self.low) & (value < self.high)), self.reason)
+
+    @property
+    def reason(self) -> str:
+        """Say what a value of this kind must be."""
+        return f"must be {self.kind.range.words}"
+
+    def _text(self, value: str) -> Any:
+        try:
+            number, units = _parse(value)
+        except UnitsError as error:
+            raise Problem(UnitsError, self.kind.name, _shown(value), str(error)) from None
+        if units is None:
+            return self._number(number, value)
+        return self._in_si(number, units, ureg, value)
+
+    def _in_si(self, magnitude: Any, units: Any, registry: Any, given: Any) -> Any:
+        factor = self._factor(units, registry, given)
+        if factor is not None:
+            return magnitude * factor.si
+        (name, *_others) = dict(units)
+        if registry is ureg and name in GAUGE_UNITS:
+            return magnitude * GAUGE_UNITS[name] + current().site_pressure
+        return registry.convert(magnitude, units, self.kind.si)
+
+    def _factor(self, units: Any, registry: Any, given: Any) -> Factor | None:
+        """Return the SI factor of a unit, or None where it has a zero of its own."""
+        memory = self.ours if registry is ureg else self.others
+        known = memory.get(id(units))
+        if known is not None and known.units is units and known.registry is registry:
+            return known
+        self._check_dimension(units, registry, given)
+        try:
+            zero, one = (float(registry.convert(x, units, self.kind.si)) for x in (0.0, 1.0))
+        except pint.PintError as error:
+            raise Problem(UnitsError, self.kind.name, _shown(given), str(error)) from None
+        if zero != 0.0:
+            return None
+        if len(memory) >= _REMEMBERED:
+            memory.clear()
+        memory[id(units)] = Factor(units, one, registry)
+        return memory[id(units)]
+
+    def _check_dimension(self, units: Any, registry: Any, given: Any) -> None:
+        try:
+            dimension = dict(registry.get_dimensionality(units))
+        except (pint.PintError, AttributeError, KeyError) as error:
+            raise Problem(UnitsError, self.kind.name, _shown(given), str(error)) from None
+        if dimension != self.kind.dimension:
+            raise _wrong_dimension(self.kind, units, _shown(given))
+        if registry is not ureg:
+            _check_names(self.kind, units, registry, _shown(given))
+        _check_zero(self.kind, units, _shown(given))
+
+    def _sequence(self, value: Any) -> np.ndarray[Any, Any]:
+        if not value:
+            raise Problem(ShapeError, self.kind.name, "an empty sequence", "give a value")
+        items = [np.asarray(self.read(item)) for item in value]
+        if len({item.shape for item in items}) > 1:
+            raise Problem(ShapeError, self.kind.name, _shown(value), "its parts differ in shape")
+        return np.stack(items)
+
+    def _number(self, value: Any, given: Any) -> Any:
+        number = _floats(value, self.kind, given)
+        plain = self.kind.plain
+        if plain is None:
+            raise Problem(UnitsError, self.kind.name, _shown(given), _plain_remedy(self.kind))
+        if self.kind.dimension and not np.all((number > plain.low) & (number < plain.high)):
+            remedy = f"a plain number must be {plain.words}; otherwise give its unit"
+            raise Problem(DomainError, self.kind.name, _shown(given), remedy)
+        return number
+
+
+class EitherReader(KindReader):
+    """Reads a value of one of two kinds into a `Given`; the dimension decides."""
+
+    def __init__(self, either: Either) -> None:
+        super().__init__(either.first)
+        self.readers = (KindReader(either.first), KindReader(either.second))
+
+    def read(self, value: Any) -> Any:
+        """Return a `Given`; raise the first kind's `Problem` where neither fits."""
+        problems = []
+        for reader in self.readers:
+            try:
+                return Given(reader.read(value), reader.kind)
+            except Problem as problem:
+                problems.append(problem)
+        first, second = problems
+        first.needed = f"{first.needed} or {second.needed}"
+        raise first
+
+    def check(self, value: Any) -> Bad | None:
+        """Check the value inside a `Given`."""
+        return self.readers[0].check(value.value)
+
+
+def _floats(value: Any, kind: Kind, given: Any) -> Any:
+    """Return a float or a float64 array; refuse everything that only looks like one."""
+
+    def refused(remedy: str) -> Problem:
+        return Problem(UnitsError, kind.name, _shown(given), remedy)
+
+    if isinstance(value, (bool, np.bool_)):
+        raise refused("a boolean is no quantity")
+    if isinstance(value, (numbers.Real, Decimal)):
+        return float(value)
+    if isinstance(value, np.ma.MaskedArray):
+        raise refused("fill the masked elements first: a mask would be lost")
+    if value is None or isinstance(value, (numbers.Complex, str, bytes, dict, set)):
+        raise refused(_plain_remedy(kind))
+    try:
+        array = np.asarray(value)
+    except (TypeError, ValueError) as error:
+        raise refused(f"it is no array: {error}") from None
+    if array.dtype.kind not in "iuf":
+        raise refused(f"an array of real numbers is needed, not of {array.dtype}")
+    floats = array.astype(np.float64, copy=False)
+    return float(floats) if floats.ndim == 0 else floats
+
+
+def is_foreign(value: Any) -> bool:
+    """Tell whether `value` is a quantity of another registry."""
+    return isinstance(value, pint.Quantity) and type(value) is not OUR_QUANTITY

@@ -1,0 +1,92 @@
+"""Our unit registry: the trade's symbols, no prefixes, surface volumes apart, safe to pickle."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import pint
+import pint.registry
+
+from wellindex.units import text
+from wellindex.units.definitions import ALL
+
+DISPLAY = ".6g~C"
+
+
+def _revive_quantity(magnitude: Any, units: dict[str, float]) -> Quantity:
+    return ureg.Quantity(magnitude, ureg.UnitsContainer(units))
+
+
+def _revive_unit(units: dict[str, float]) -> Any:
+    return ureg.Unit(ureg.UnitsContainer(units))
+
+
+def _revive_registry() -> Registry:
+    return ureg
+
+
+class Quantity(pint.registry.Quantity[Any]):
+    """A number, or an array, with its unit, in the registry of this package."""
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return _revive_quantity, (self.magnitude, dict(self.unit_items()))
+
+
+class Unit(pint.registry.Unit):
+    """A unit in the registry of this package."""
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return _revive_unit, (dict(self._units),)
+
+
+class Registry(pint.registry.GenericUnitRegistry[Quantity, Unit]):
+    """The registry of this package; ``wellindex.ureg`` is its one instance.
+
+    Parameters
+    ----------
+    definitions : str
+        Unit definitions, one to a line.
+    """
+
+    Quantity = Quantity
+    Unit = Unit
+
+    def __init__(self, definitions: str = ALL) -> None:
+        self._known_names: frozenset[str] = frozenset()
+        super().__init__(
+            filename=None,
+            on_redefinition="raise",
+            autoconvert_offset_to_baseunit=True,
+        )
+        self.load_definitions(_lines(definitions))
+        self.preprocessors = [self._guard]
+        self.formatter.default_format = DISPLAY
+
+    def names(self) -> frozenset[str]:
+        """Return every unit name and symbol that may stand in a unit string."""
+        return self._known_names or self._read_names()
+
+    def _read_names(self) -> frozenset[str]:
+        self._known_names = frozenset(self) | {"dimensionless"}
+        return self._known_names
+
+    def define(self, definition: Any) -> None:
+        """Add a unit of your own, as in ``ureg.define("furlong = 660 * foot")``."""
+        super().define(definition)
+        self._known_names = frozenset()
+
+    def _guard(self, string: str) -> str:
+        return text.guard(string, self.names)
+
+    def __deepcopy__(self, memo: dict[int, Any]) -> Any:
+        return self
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return _revive_registry, ()
+
+
+def _lines(definitions: str) -> list[str]:
+    return [line for line in definitions.splitlines() if line]
+
+
+ureg = Registry()
