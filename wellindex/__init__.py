@@ -1,5 +1,12 @@
-"""The well index of a real well in a coarse numerical grid, unit-safe."""
+"""The well index of a real well in a coarse numerical grid, unit-safe.
 
+Screening calculations: not for well control, nor a substitute for licensed engineering and local
+regulation.
+"""
+
+from wellindex.convention import Convention
+from wellindex.coupling import couple
+from wellindex.couplings import Couplings
 from wellindex.errors import (
     ArgumentsError,
     AssumptionWarning,
@@ -10,11 +17,19 @@ from wellindex.errors import (
     UnitsError,
     WellIndexError,
 )
-from wellindex.index import well_index
+from wellindex.fluid import Liquid
+from wellindex.index import productivity_index, well_index
+from wellindex.profile import RadialProfile, radial_profile
 from wellindex.radius.closed_form import equivalent_radius, equivalent_wellbore_radius
+from wellindex.rock import Permeability, permeability_from_conductivity
+from wellindex.space.grid import TensorGrid
+from wellindex.space.path import Path
+from wellindex.state import WellState
 from wellindex.units.other_registries import define_units
 from wellindex.units.registry import Quantity, ureg
 from wellindex.units.systems import set_unit_system, unit_system
+from wellindex.well import Well
+from wellindex.workings import Workings, workings
 
 __version__ = "0.1.0"
 
@@ -23,16 +38,31 @@ __all__ = [
     "AssumptionWarning",
     "BackflowWarning",
     "CaseError",
+    "Convention",
+    "Couplings",
     "DomainError",
+    "Liquid",
+    "Path",
+    "Permeability",
     "Quantity",
+    "RadialProfile",
     "ShapeError",
+    "TensorGrid",
     "UnitsError",
+    "Well",
     "WellIndexError",
+    "WellState",
+    "Workings",
+    "couple",
     "define_units",
     "equivalent_radius",
     "equivalent_wellbore_radius",
+    "permeability_from_conductivity",
+    "productivity_index",
+    "radial_profile",
     "set_unit_system",
     "unit_system",
     "ureg",
     "well_index",
+    "workings",
 ]

@@ -15,6 +15,7 @@ from wellindex.units.elementwise import least, log, sqrt, where
 Direction = Literal["x", "y", "z"]
 Placement = Literal["centre", "corner", "west", "east", "south", "north", "top", "bottom"]
 Invalid = Literal["raise", "nan"]
+Against = Literal["block", "boundary", "average"]
 
 TWO_PI = 2.0 * math.pi
 SMALLEST_LOGARITHM = 0.5
@@ -207,3 +208,101 @@ def _plane(
     if direction == "x":
         return dy, dz, dx, ky, kz
     return dx, dz, dy, kx, kz
+
+
+@quantities
+def productivity_index(
+    check: Checks,
+    *,
+    against: Against,
+    viscosity: kinds.Viscosity,
+    formation_volume_factor: kinds.LiquidVolumeFactor,
+    relative_permeability: kinds.Fraction = 1.0,
+    wi: kinds.WellIndex | None = None,
+    k: kinds.Permeability | None = None,
+    h: kinds.Length | None = None,
+    re: kinds.Length | None = None,
+    rw: kinds.Length | None = None,
+    skin: kinds.Skin = 0.0,
+) -> kinds.ProductivityIndex:
+    r"""Surface rate per drawdown, against a pressure that is always named.
+
+    .. math::
+
+        J = \frac{k_r}{\mu B}
+            \begin{cases}
+            WI & \text{against "block"} \\
+            2\pi k h / (\ln(r_e/r_w) + \mathrm{skin}) & \text{against "boundary"} \\
+            2\pi k h / (\ln(r_e/r_w) - 3/4 + \mathrm{skin}) & \text{against "average"}
+            \end{cases}
+
+    Parameters
+    ----------
+    against : {"block", "boundary", "average"}
+        The pressure that the drawdown counts from: the block's, the constant pressure at the
+        outer boundary (steady state), or the average of a closed circle (pseudo-steady state).
+    viscosity : Quantity or str
+        Of the flowing fluid at reservoir conditions; positive.
+    formation_volume_factor : Quantity, str or float
+        rm3/sm3, rb/stb, or a plain number between 0.5 and 10 for a liquid.
+    relative_permeability : float or array
+        Of the flowing fluid, between 0 and 1.
+    wi : Quantity, well index, any shape
+        Against "block": the index of the coupling; nothing else of the geometry.
+    k, h, re, rw : Quantity or str, any shape
+        Against "boundary" or "average": permeability, thickness, outer (drainage) radius and
+        wellbore radius.
+    skin : float or array
+        Against "boundary" or "average": the skin of the whole well.
+
+    Returns
+    -------
+    Quantity, surface volume/time/pressure
+        Metric sm3/day/bar, oilfield stb/day/psi, si sm3/s/Pa, darcy scm3/s/atm.
+
+    Raises
+    ------
+    UnitsError
+        A missing or wrong unit.
+    DomainError
+        Geometry that does not belong to `against`, `re` not beyond `rw`, or a flow resistance
+        that is not positive.
+
+    References
+    ----------
+    .. [1] L. P. Dake, "Fundamentals of Reservoir Engineering", Elsevier (1978), table 6.1
+       (from memory of the source).
+    .. [2] J. Lee, "Well Testing", SPE Textbook Series 1 (1982), eq. 1.19 (from memory of the
+       source).
+
+    Examples
+    --------
+    >>> from wellindex import productivity_index, unit_system
+    >>> with unit_system("oilfield"):
+    ...     J = productivity_index(against="average", k="8.2 mD", h="53 ft", re="2980 ft",
+    ...                            rw="0.328 ft", viscosity="1.7 cP",
+    ...                            formation_volume_factor="1.1 rb/stb")
+    >>> print(f"{J:.4f}")
+    0.1968 stb/day/psi
+    """
+    mobility = relative_permeability / (viscosity * formation_volume_factor)
+    radial = {"k": k, "h": h, "re": re, "rw": rw}
+    if against == "block":
+        (index,) = _needed("block", {"wi": wi}, radial)
+        return index * mobility
+    k, h, outer, inner = _needed(against, radial, {"wi": wi})
+    check.refuse(outer <= inner, "the outer radius must be larger than the wellbore radius", outer)
+    resistance = log(outer / inner) + skin - (0.75 if against == "average" else 0.0)
+    check.refuse(resistance <= 0.0, "ln(re/rw) and skin leave no flow resistance", resistance)
+    return geometric_index(k, h, 1.0, resistance) * mobility
+
+
+def _needed(against: str, needed: dict[str, Any], unwanted: dict[str, Any]) -> list[Any]:
+    """Return what the chosen pressure needs; refuse what is missing or does not belong."""
+    missing = [name for name, value in needed.items() if value is None]
+    given = [name for name, value in unwanted.items() if value is not None]
+    if missing or given:
+        parts = [f"needs {', '.join(missing)}"] if missing else []
+        parts += [f"takes no {', '.join(given)}"] if given else []
+        raise DomainError(f"productivity_index(): against={against!r} {' and '.join(parts)}")
+    return list(needed.values())

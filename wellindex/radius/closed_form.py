@@ -64,6 +64,12 @@ def placed_radius(
     return Placed(r0 * exp(_side_exponent(across, along)), 0.5)
 
 
+def stretched_wellbore(rw: Any, k1: Any, k2: Any) -> Any:
+    """Return the radius of the circle that stands for the stretched wellbore's ellipse, in SI."""
+    ratio = sqrt(sqrt(k2 / k1))
+    return 0.5 * rw * (ratio + 1.0 / ratio)
+
+
 @quantities
 def equivalent_radius(
     check: Checks,
@@ -182,5 +188,4 @@ def equivalent_wellbore_radius(
     0.1250 m
     """
     check.refuse(kx * ky == 0.0, "the ellipse has no radius where kx or ky is zero")
-    ratio = sqrt(sqrt(ky / kx))
-    return 0.5 * rw * (ratio + 1.0 / ratio)
+    return stretched_wellbore(rw, kx, ky)

@@ -187,6 +187,6 @@ def _without_bad(declaration: Declaration, name: str, value: Any, tally: Tally) 
     bad = None if reader is None else reader.check(value)
     if bad is None:
         return value
-    tally.start(0, value.shape)
-    tally.refuse(bad.mask, f"{name} {bad.reason}")
+    tally.start(0, value.shape, value.size)
+    tally.refuse(np.ravel(bad.mask), f"{name} {bad.reason}")
     return np.where(bad.mask, np.nan, value)

@@ -15,7 +15,7 @@ _PACKAGE = __name__.partition(".")[0]
 
 def warn(message: str, category: type[Warning]) -> None:
     """Warn at the line of the caller outside this package."""
-    level = 1
+    level = 2
     frame = sys._getframe(1)
     while frame.f_back is not None and frame.f_globals.get("__name__", "").startswith(_PACKAGE):
         frame = frame.f_back
@@ -56,14 +56,16 @@ class Tally(Checks):
         self.keep_going = keep_going
         self.offset = 0
         self.shape: tuple[int, ...] = ()
+        self.size = 0
         self.lost: Any = None
         self.reasons: dict[str, int] = {}
         self.cautions: dict[str, int] = {}
 
-    def start(self, offset: int, shape: tuple[int, ...]) -> None:
-        """Begin the block whose first element is number `offset` of `shape`."""
+    def start(self, offset: int, shape: tuple[int, ...], size: int) -> None:
+        """Begin the block of `size` elements whose first is number `offset` of `shape`."""
         self.offset = offset
         self.shape = shape
+        self.size = size
         self.lost = None
 
     def refuse(self, bad: Any, reason: str, shown: Any = None) -> None:
@@ -74,15 +76,18 @@ class Tally(Checks):
             flat = int(np.argmax(bad))
             where = place(self.offset + flat, self.shape)
             raise DomainError(f"{reason}{_example(shown, bad, flat)} at {where}")
-        bad = np.asarray(bad)
+        bad = np.broadcast_to(bad, self.size)
         fresh = bad if self.lost is None else bad & ~self.lost
-        self.reasons[reason] = self.reasons.get(reason, 0) + int(np.count_nonzero(fresh))
-        self.lost = bad if self.lost is None else bad | self.lost
+        count = int(np.count_nonzero(fresh))
+        if count:
+            self.reasons[reason] = self.reasons.get(reason, 0) + count
+            self.lost = bad if self.lost is None else bad | self.lost
 
     def caution(self, bad: Any, reason: str, shown: Any = None) -> None:
         """Count doubtful elements; `report` warns once."""
         if bad is not False and np.any(bad):
-            self.cautions[reason] = self.cautions.get(reason, 0) + int(np.count_nonzero(bad))
+            count = int(np.count_nonzero(np.broadcast_to(bad, self.size)))
+            self.cautions[reason] = self.cautions.get(reason, 0) + count
 
     def report(self) -> None:
         """Warn once for all that was marked or doubted."""

@@ -6,7 +6,7 @@ import inspect
 import types
 import typing
 from collections.abc import Callable
-from typing import Annotated, Any, Literal, NamedTuple, get_args, get_origin
+from typing import Annotated, Any, Literal, NamedTuple, NoReturn, get_args, get_origin
 
 import numpy as np
 
@@ -36,6 +36,8 @@ def _reader(kind: Kind | Either) -> KindReader:
 
 
 def _parameter(name: str, annotation: Any) -> Parameter:
+    if annotation is typing.Self:
+        return Parameter(name, None, (), (), False)
     options = [annotation]
     if get_origin(annotation) in (typing.Union, types.UnionType):
         options = list(get_args(annotation))
@@ -174,7 +176,7 @@ class Declaration:
         where = f" at {place(flat, np.shape(value))}" if np.ndim(value) else ""
         return f"{reader.kind.name}, {reader.kind.range.words}", f"{number:.6g}{unit}{where}", ""
 
-    def raise_for(self, problems: dict[str, Problem]) -> None:
+    def raise_for(self, problems: dict[str, Problem]) -> NoReturn:
         """Raise one error that lists every bad argument."""
         lines = []
         for name, problem in problems.items():
@@ -185,7 +187,7 @@ class Declaration:
         count = "1 argument is" if len(lines) == 1 else f"{len(lines)} arguments are"
         raise error(f"{self.name}(): {count} wrong\n" + "\n".join(lines)) from None
 
-    def raise_shapes(self, arrays: dict[str, Any]) -> None:
+    def raise_shapes(self, arrays: dict[str, Any]) -> NoReturn:
         """Raise `ShapeError` naming the shapes that do not broadcast."""
         shapes = ", ".join(f"{name} {np.shape(value)}" for name, value in arrays.items())
         raise ShapeError(f"{self.name}(): these shapes do not fit together: {shapes}") from None

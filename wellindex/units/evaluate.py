@@ -3,15 +3,17 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Iterable, Iterator
 from typing import Any
 
 import numpy as np
+import pint
 
 from wellindex.units.answers import as_quantity, in_other_registry
 from wellindex.units.checks import AT_ONCE, Tally
 from wellindex.units.declaration import Declaration
-from wellindex.units.reading import OUR_QUANTITY, Problem, is_foreign
+from wellindex.units.reading import Problem
+from wellindex.units.registry import ureg
 
 #: Elements evaluated at once: a few arrays of this size stay in a core's cache.
 BLOCK = 16384
@@ -69,7 +71,9 @@ def scale_arrays(
 
 def full(result: Any, shape: tuple[int, ...]) -> Any:
     """Return a result in the shape of its arguments, also where it does not depend on some."""
-    return result if result.shape == shape else np.broadcast_to(result, shape).copy()
+    if np.shape(result) == shape:
+        return result
+    return np.broadcast_to(result, shape).copy()
 
 
 class Careful:
@@ -109,6 +113,8 @@ class Careful:
                     self.declaration.check(name, values[name])
             except Problem as problem:
                 problems[name] = problem
+        if problems and scales:
+            return self._read(given, keep_going, whole=True)
         if problems:
             self.declaration.raise_for(problems)
         return values, scales
@@ -133,7 +139,7 @@ class Careful:
         except ValueError:
             self.declaration.raise_shapes(arrays)
         if math.prod(shape) <= BLOCK and not keep_going:
-            return full(np.asarray(self.body(AT_ONCE, **values)), shape)
+            return full(np.array(self.body(AT_ONCE, **values)), shape)
         tally = Tally(keep_going=keep_going)
         try:
             result = self._in_blocks(values, arrays, scales, shape, tally)
@@ -162,7 +168,7 @@ class Careful:
         offset = 0
         with blocks, np.errstate(divide="ignore", invalid="ignore"):
             for *inputs, out in blocks:
-                tally.start(offset, shape)
+                tally.start(offset, shape, out.size)
                 for name, value in zip(arrays, inputs, strict=True):
                     values[name] = self._block(name, value, scales.get(name), tally)
                 out[...] = self.body(tally, **values)
@@ -191,12 +197,17 @@ class _OutOfRange(Exception):
 def _only_registry(given: dict[str, Any]) -> Any:
     """Return the one other registry that all given quantities belong to, or None."""
     found = None
-    for value in given.values():
-        if is_foreign(value):
-            registry = value._REGISTRY
-            if found is not None and found is not registry:
-                return None
-            found = registry
-        elif type(value) is OUR_QUANTITY:
+    for value in _parts(given.values()):
+        if found is not None and found is not value._REGISTRY:
             return None
-    return found
+        found = value._REGISTRY
+    return None if found is ureg else found
+
+
+def _parts(values: Iterable[Any]) -> Iterator[Any]:
+    """Every quantity given, also those in lists and tuples."""
+    for value in values:
+        if isinstance(value, pint.Quantity):
+            yield value
+        elif isinstance(value, (list, tuple)):
+            yield from _parts(value)

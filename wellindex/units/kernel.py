@@ -15,6 +15,7 @@ import numpy as np
 
 from wellindex.units.checks import AT_ONCE
 from wellindex.units.declaration import Declaration, Parameter
+from wellindex.units.evaluate import full
 from wellindex.units.reading import Problem
 
 
@@ -48,7 +49,9 @@ def compile_si(body: Callable[..., Any], declaration: Declaration) -> Callable[.
     linecache.cache[filename] = (len(source), None, source.splitlines(keepends=True), filename)
 
     def general(values: dict[str, Any]) -> Any:
-        return body(AT_ONCE, **_read_si(declaration, values))
+        read, shape = _read_si(declaration, values)
+        result = body(AT_ONCE, **read)
+        return full(result, shape) if shape is not None else result
 
     namespace: dict[str, Any] = {
         "_body": body,
@@ -64,7 +67,10 @@ def compile_si(body: Callable[..., Any], declaration: Declaration) -> Callable[.
     return si
 
 
-def _read_si(declaration: Declaration, values: dict[str, Any]) -> dict[str, Any]:
+def _read_si(
+    declaration: Declaration, values: dict[str, Any]
+) -> tuple[dict[str, Any], tuple[int, ...] | None]:
+    """Return the values, and the shape of the answer where one of them is an array."""
     problems: dict[str, Problem] = {}
     read: dict[str, Any] = {}
     for name, value in values.items():
@@ -76,8 +82,9 @@ def _read_si(declaration: Declaration, values: dict[str, Any]) -> dict[str, Any]
     if problems:
         declaration.raise_for(problems)
     arrays = {name: v for name, v in read.items() if isinstance(v, np.ndarray)}
+    if not arrays:
+        return read, None
     try:
-        np.broadcast_shapes(*(array.shape for array in arrays.values()))
+        return read, np.broadcast_shapes(*(array.shape for array in arrays.values()))
     except ValueError:
         declaration.raise_shapes(arrays)
-    return read

@@ -206,6 +206,9 @@ PRODUCTIVITY_INDEX = Kind(
 Length = Annotated[Any, LENGTH]
 Coordinate = Annotated[Any, COORDINATE]
 Permeability = Annotated[Any, PERMEABILITY]
+TensorPermeability = Annotated[
+    Any, Kind("a permeability tensor", {"[length]": 2.0}, "meter**2", "mD", "mD", "D", ANY)
+]
 Viscosity = Annotated[Any, VISCOSITY]
 Pressure = Annotated[Any, PRESSURE]
 PressureDifference = Annotated[Any, PRESSURE_DIFFERENCE]
@@ -222,6 +225,7 @@ HydraulicConductivity = Annotated[Any, HYDRAULIC_CONDUCTIVITY]
 WellIndex = Annotated[Any, WELL_INDEX]
 ProductivityIndex = Annotated[Any, PRODUCTIVITY_INDEX]
 Skin = Annotated[Any, _dimensionless("a skin (a plain number)", ANY)]
+Number = Annotated[Any, _dimensionless("a plain number", ANY)]
 Fraction = Annotated[Any, _dimensionless("a fraction", FRACTION)]
 Sector = Annotated[Any, _dimensionless("the fraction of a full circle that flows", PART)]
 Scale = Annotated[Any, _dimensionless("a factor (a plain number)", NON_NEGATIVE)]

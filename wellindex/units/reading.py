@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import numbers
 from decimal import Decimal
-from functools import lru_cache
 from typing import Any, NamedTuple
 
 import numpy as np
@@ -14,13 +13,14 @@ from wellindex.errors import DomainError, ShapeError, UnitsError, WellIndexError
 from wellindex.units.definitions import GAUGE_UNITS, MISTAKEN_ELSEWHERE, OFFSET_UNITS
 from wellindex.units.elementwise import greatest, least
 from wellindex.units.kinds import Either, Given, Kind
-from wellindex.units.registry import ureg
-from wellindex.units.systems import current
-from wellindex.units.text import split_number
+from wellindex.units.registry import read_text, ureg
+from wellindex.units.systems import STANDARD_ATMOSPHERE, current
 
 OUR_QUANTITY = ureg.Quantity
 BARREL = 0.158987294928
 _REMEMBERED = 1024
+_OWN_ZERO = "its unit has a zero of its own: write one without"
+_NEVER_NUMBERS = (numbers.Complex, str, bytes, dict, set, pint.Quantity)
 
 
 class Problem(Exception):
@@ -61,13 +61,6 @@ def _plain_remedy(kind: Kind) -> str:
     return f"give a quantity or text with its unit, such as '... {kind.unit(system)}'"
 
 
-@lru_cache(maxsize=4096)
-def _parse(text: str) -> tuple[float, Any]:
-    ureg._guard(text)
-    number, unit = split_number(text)
-    return number, ureg.parse_units(unit, as_delta=False)._units if unit else None
-
-
 def _wrong_dimension(kind: Kind, units: Any, shown: str) -> Problem:
     names = set(dict(units))
     remedy = "use a unit such as " + " or ".join(dict.fromkeys((kind.metric, kind.oilfield)))
@@ -86,7 +79,8 @@ def _check_names(kind: Kind, units: Any, registry: Any, shown: str) -> None:
     names = set(dict(units))
     for name in names & set(MISTAKEN_ELSEWHERE):
         raise Problem(UnitsError, kind.name, shown, MISTAKEN_ELSEWHERE[name])
-    if "barrel" in names:
+    roots = {root for name in names for _, root, _ in registry.parse_unit_name(name)}
+    if "barrel" in roots:
         cubic_metres = registry.convert(1.0, registry.UnitsContainer({"barrel": 1}), "meter**3")
         if abs(cubic_metres / BARREL - 1.0) > 1e-6:
             raise Problem(
@@ -104,6 +98,16 @@ def _check_zero(kind: Kind, units: Any, shown: str) -> None:
         raise Problem(UnitsError, kind.name, shown, "this is a difference of two, not a value")
     if names & OFFSET_UNITS and kind.measured_from_zero is False:
         raise Problem(UnitsError, kind.name, shown, "a difference has no gauge: write psi or bar")
+
+
+def parse_unit(text: str) -> Any:
+    """Return the unit that a guarded text names; raise `UnitsError`."""
+    if not isinstance(text, str):
+        raise UnitsError(f"a unit is a text such as 'mD*ft'; got {_shown(text)}")
+    number, units = read_text("1 " + text)
+    if number != 1.0 or units is None:
+        raise UnitsError(f"{text!r} is not a unit")
+    return units
 
 
 class KindReader:
@@ -131,7 +135,13 @@ class KindReader:
 
     def read_si(self, value: Any) -> Any:
         """Return a number or array that is given in SI, without a unit."""
-        return _floats(value, self.kind, value)
+        try:
+            return _floats(value, self.kind, value)
+        except Problem as problem:
+            problem.remedy = problem.remedy.replace(
+                _plain_remedy(self.kind), f"give a plain number in {self.kind.si}"
+            )
+            raise
 
     def raw(self, value: Any) -> tuple[np.ndarray[Any, Any], float] | None:
         """Return a float array and its SI factor, unscaled, or None where that is not enough."""
@@ -158,7 +168,7 @@ class KindReader:
 
     def _text(self, value: str) -> Any:
         try:
-            number, units = _parse(value)
+            number, units = read_text(value)
         except UnitsError as error:
             raise Problem(UnitsError, self.kind.name, _shown(value), str(error)) from None
         if units is None:
@@ -170,7 +180,7 @@ class KindReader:
         if factor is not None:
             return magnitude * factor.si
         (name, *_others) = dict(units)
-        if registry is ureg and name in GAUGE_UNITS:
+        if name in GAUGE_UNITS and registry.convert(0, units, self.kind.si) == STANDARD_ATMOSPHERE:
             return magnitude * GAUGE_UNITS[name] + current().site_pressure
         return registry.convert(magnitude, units, self.kind.si)
 
@@ -182,10 +192,12 @@ class KindReader:
             return known
         self._check_dimension(units, registry, given)
         try:
-            zero, one = (float(registry.convert(x, units, self.kind.si)) for x in (0.0, 1.0))
+            zero, one = (float(registry.convert(x, units, self.kind.si)) for x in (0, 1))
         except pint.PintError as error:
             raise Problem(UnitsError, self.kind.name, _shown(given), str(error)) from None
         if zero != 0.0:
+            if not self.kind.measured_from_zero:
+                raise Problem(UnitsError, self.kind.name, _shown(given), _OWN_ZERO)
             return None
         if len(memory) >= _REMEMBERED:
             memory.clear()
@@ -241,6 +253,9 @@ class EitherReader(KindReader):
         first.needed = f"{first.needed} or {second.needed}"
         raise first
 
+    def raw(self, value: Any) -> None:
+        """Return None: a `Given` is never left unscaled."""
+
     def check(self, value: Any) -> Bad | None:
         """Check the value inside a `Given`."""
         return self.readers[0].check(value.value)
@@ -255,10 +270,13 @@ def _floats(value: Any, kind: Kind, given: Any) -> Any:
     if isinstance(value, (bool, np.bool_)):
         raise refused("a boolean is no quantity")
     if isinstance(value, (numbers.Real, Decimal)):
-        return float(value)
+        try:
+            return float(value)
+        except OverflowError:
+            raise refused("the number is too large") from None
     if isinstance(value, np.ma.MaskedArray):
         raise refused("fill the masked elements first: a mask would be lost")
-    if value is None or isinstance(value, (numbers.Complex, str, bytes, dict, set)):
+    if value is None or isinstance(value, _NEVER_NUMBERS):
         raise refused(_plain_remedy(kind))
     try:
         array = np.asarray(value)

@@ -2,15 +2,19 @@
 
 from __future__ import annotations
 
-from typing import Any
+from functools import lru_cache
+from typing import TYPE_CHECKING, Any
 
 import pint
 import pint.registry
 
+from wellindex.errors import UnitsError
 from wellindex.units import text
 from wellindex.units.definitions import ALL
 
-DISPLAY = ".6g~C"
+SYMBOLS = "~C"
+DISPLAY = f".6g{SYMBOLS}"
+_UNIT_FORMATS = frozenset("~CDHLP")
 
 
 def _revive_quantity(magnitude: Any, units: dict[str, float]) -> Quantity:
@@ -28,6 +32,18 @@ def _revive_registry() -> Registry:
 class Quantity(pint.registry.Quantity[Any]):
     """A number, or an array, with its unit, in the registry of this package."""
 
+    if not TYPE_CHECKING:  # the signature that a type checker sees is pint's
+
+        def __new__(cls, *args: Any, **kwargs: Any) -> Any:
+            # pint would give a class without a registry its application registry.
+            if cls is Quantity:
+                return ureg.Quantity(*args, **kwargs)
+            return super().__new__(cls, *args, **kwargs)
+
+    def __format__(self, spec: str) -> str:
+        """Show symbols, also where `spec` speaks of the number alone, as ".3f" does."""
+        return super().__format__(spec if not spec or _UNIT_FORMATS & set(spec) else spec + SYMBOLS)
+
     def __reduce__(self) -> tuple[Any, ...]:
         return _revive_quantity, (self.magnitude, dict(self.unit_items()))
 
@@ -37,6 +53,10 @@ class Unit(pint.registry.Unit):
 
     def __reduce__(self) -> tuple[Any, ...]:
         return _revive_unit, (dict(self._units),)
+
+
+class UnknownName(UnitsError, AttributeError):
+    """An attribute that is no unit: `hasattr` expects an `AttributeError`."""
 
 
 class Registry(pint.registry.GenericUnitRegistry[Quantity, Unit]):
@@ -57,6 +77,7 @@ class Registry(pint.registry.GenericUnitRegistry[Quantity, Unit]):
             filename=None,
             on_redefinition="raise",
             autoconvert_offset_to_baseunit=True,
+            separate_format_defaults=True,
         )
         self.load_definitions(_lines(definitions))
         self.preprocessors = [self._guard]
@@ -75,6 +96,12 @@ class Registry(pint.registry.GenericUnitRegistry[Quantity, Unit]):
         super().define(definition)
         self._known_names = frozenset()
 
+    def __getattr__(self, item: str) -> Any:
+        try:
+            return super().__getattr__(item)
+        except UnitsError as error:
+            raise UnknownName(str(error)) from None
+
     def _guard(self, string: str) -> str:
         return text.guard(string, self.names)
 
@@ -90,3 +117,16 @@ def _lines(definitions: str) -> list[str]:
 
 
 ureg = Registry()
+
+
+@lru_cache(maxsize=4096)
+def read_text(string: str) -> tuple[float, Any]:
+    """Return the number and the units of "150 ft"; the units of a bare number are None."""
+    text.guard(string, ureg.names)
+    number, unit = text.split_number(string)
+    try:
+        return number, ureg.parse_units(unit, as_delta=False)._units if unit else None
+    except ValueError:
+        raise UnitsError(
+            f"cannot read {string!r} as a quantity: a number stands in its unit"
+        ) from None

@@ -7,9 +7,11 @@ from contextlib import contextmanager
 from contextvars import ContextVar
 from typing import Literal, NamedTuple, get_args
 
+import numpy as np
+
 from wellindex.errors import DomainError, UnitsError
-from wellindex.units.registry import Quantity, ureg
-from wellindex.units.text import split_number
+from wellindex.units.definitions import OFFSET_UNITS
+from wellindex.units.registry import Quantity, read_text, ureg
 
 SystemName = Literal["metric", "oilfield", "si", "darcy"]
 SYSTEMS: tuple[SystemName, ...] = get_args(SystemName)
@@ -43,10 +45,17 @@ def _site_pressure(given: Quantity | str | None) -> float:
     if given is None:
         return STANDARD_ATMOSPHERE
     if isinstance(given, str):
-        number, unit = split_number(given)
-        given = ureg.Quantity(number, unit)
-    if not isinstance(given, Quantity) or not given.check("[mass]/[length]/[time]**2"):
-        raise UnitsError("site_pressure needs an absolute pressure of our registry or a string")
+        given = ureg.Quantity(*read_text(given))
+    if (
+        not isinstance(given, Quantity)
+        or np.ndim(given.magnitude)
+        or given.dimensionality != ureg.pascal.dimensionality
+        or OFFSET_UNITS & set(dict(given.unit_items()))
+    ):
+        raise UnitsError(
+            "site_pressure needs one absolute pressure of our registry, or a text such as "
+            f"'0.85 bar'; got {given!r}"
+        )
     value = float(given.m_as("Pa"))
     if not 2e4 <= value <= 1.2e5:
         raise DomainError(

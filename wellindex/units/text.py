@@ -19,6 +19,9 @@ _TOKEN = re.compile(
     re.ASCII,
 )
 _LEADING = re.compile(rf"\s*(?P<number>[+-]?{_NUMBER})(?![0-9.])\s*(?P<unit>.*)", re.ASCII)
+_DIMENSIONS = re.compile(
+    r"\[[a-z_]{1,30}\](?: ?(?:\*\*|[*/^]) ?(?:\[[a-z_]{1,30}\]|-?\d{1,2})){0,10}", re.ASCII
+)
 _POWERED = re.compile(r"(?P<base>km|cm|mm|m|ft|in)(?P<power>[23])")
 _WRITTEN_OTHERWISE = {
     "²": "**2",
@@ -54,7 +57,7 @@ def _check_name(name: str, text: str, known: Callable[[], Collection[str]]) -> s
         return name
     powered = _POWERED.fullmatch(name)
     if powered:
-        return f"{powered['base']}**{powered['power']}"
+        return f"({powered['base']}**{powered['power']})"
     raise _refuse(text, f"unknown unit {name!r}{_nearest(name, known())}")
 
 
@@ -77,8 +80,10 @@ class _Grammar:
     def _exponent(self, kind: str, value: str) -> str:
         if kind == "sign" and self.before == "power":
             return "power sign"
-        if kind != "number" or float(value) > LARGEST_EXPONENT:
-            raise _refuse(self.text, f"an exponent must be a plain number up to {LARGEST_EXPONENT}")
+        if kind != "number" or not 0.0 < float(value) <= LARGEST_EXPONENT:
+            raise _refuse(
+                self.text, f"an exponent must be a plain number, not 0, up to {LARGEST_EXPONENT}"
+            )
         return "exponent"
 
     def _name(self, value: str) -> str:
@@ -87,6 +92,8 @@ class _Grammar:
     def _number(self, value: str) -> str:
         if float(value) == float("inf"):
             raise _refuse(self.text, "the number is too large")
+        if float(value) == 0.0 and self.before not in ("start", "sign"):
+            raise _refuse(self.text, "zero cannot be a factor or divisor of a unit")
         if self.before in ("start", "sign", "operator", "open"):
             return "number"
         if value == "1" and self.before == "number":
@@ -129,6 +136,8 @@ def guard(text: str, known: Callable[[], Collection[str]]) -> str:
     """Return `text` in a spelling that is safe to parse, or raise `UnitsError`."""
     if len(text) > LONGEST:
         raise _refuse(text, f"longer than {LONGEST} characters")
+    if _DIMENSIONS.fullmatch(text):
+        return text
     if not text.isprintable():
         raise _refuse(text, "it holds a control character")
     plain = text.translate(_REWRITE).strip()
@@ -147,8 +156,10 @@ def guard(text: str, known: Callable[[], Collection[str]]) -> str:
         value = "**" if kind == "power" else token[kind]
         if kind == "name":
             value = _check_name(value, text, known)
+        elif value.isdigit():
+            value = str(int(value))  # pint splits a number with leading zeros into two
         if kind in ("name", "number", "open") and grammar.before in _FACTOR_ENDS:
-            parts.append(" ")
+            parts.append("*")  # pint reads "5 (m)**2" as (5 m)**2
         grammar.take(kind, value)
         parts.append(value)
         at = token.end()

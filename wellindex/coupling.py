@@ -1,0 +1,297 @@
+"""Tie a well to every block that its open intervals cross."""
+
+from __future__ import annotations
+
+from typing import Any, Literal
+
+import numpy as np
+
+from wellindex.couplings import Couplings, Plane, Rows
+from wellindex.errors import AssumptionWarning, DomainError, ShapeError
+from wellindex.index import (
+    Invalid,
+    Placement,
+    flow_resistance,
+    side_axis,
+)
+from wellindex.radius.closed_form import placed_radius
+from wellindex.rock import Permeability
+from wellindex.space.crossing import Crossings, crossings
+from wellindex.space.grid import AXES, SIDES, TensorGrid
+from wellindex.space.path import Path
+from wellindex.units import kinds
+from wellindex.units.answers import as_quantity
+from wellindex.units.boundary import reads
+from wellindex.units.checks import Checks, Tally, warn
+
+Array = np.ndarray[Any, Any]
+
+#: A path turned less than this from an axis (as a part of its length) runs along it.
+_STRAIGHT = 1e-9
+_TIGHT = "no permeability across the well: index 0"
+_PLANE = {"x": (1, 2), "y": (0, 2), "z": (0, 1)}
+
+
+def _open_intervals(path: Path, intervals: Any) -> Array:
+    """Return intervals in SI, (n, 2): checked, in order, inside the path."""
+    _points, depths = path.in_si()
+    if intervals is None:
+        return np.array([[depths[0], depths[-1]]])
+    intervals = np.asarray(intervals)
+    if intervals.ndim != 2 or intervals.shape[1] != 2:
+        raise ShapeError(
+            f"couple(): intervals are pairs (from, to) of measured depth; got {intervals.shape}"
+        )
+    slack = 1e-9 * max(abs(depths[0]), abs(depths[-1]), 1.0)
+    for number, (top, bottom) in enumerate(intervals):
+        if not top < bottom:
+            raise DomainError(f"couple(): interval {number} does not run downwards along the path")
+        if top < depths[0] - slack or bottom > depths[-1] + slack:
+            first, last = (as_quantity(kinds.COORDINATE, float(d)) for d in (depths[0], depths[-1]))
+            raise DomainError(
+                f"couple(): interval {number} leaves the path, which runs from {first} to {last} "
+                "in measured depth"
+            )
+        if number and top < intervals[number - 1, 1] - slack:
+            raise DomainError(
+                f"couple(): interval {number} overlaps or precedes interval {number - 1}: list "
+                "intervals in order along the path"
+            )
+    inside: Array = np.clip(intervals, depths[0], depths[-1])
+    return inside
+
+
+def _per_interval(name: str, value: Any, count: int) -> Array:
+    array = np.asarray(value, dtype=float)
+    if array.shape not in ((), (count,)):
+        raise ShapeError(
+            f"couple(): {name} is one value, or one per interval ({count}); got {array.shape}"
+        )
+    return np.broadcast_to(array, (count,))
+
+
+def _joined(intervals: Array, rw: Array, skin: Array) -> tuple[Array, Array, Array]:
+    """Join intervals that touch and are alike, so that splitting one changes nothing."""
+    keep = [0]
+    ends = [intervals[0, 1]]
+    for n in range(1, len(intervals)):
+        touches = intervals[n, 0] <= ends[-1] * (1 + 1e-12)
+        if touches and rw[n] == rw[keep[-1]] and skin[n] == skin[keep[-1]]:
+            ends[-1] = intervals[n, 1]
+        else:
+            keep.append(n)
+            ends.append(intervals[n, 1])
+    return np.column_stack((intervals[keep, 0], ends)), rw[keep], skin[keep]
+
+
+def _direction(found: Crossings) -> str:
+    """Return the axis that the whole open path runs along."""
+    total = found.components.sum(axis=0)
+    axis = int(np.argmax(total))
+    if total.sum() - total[axis] > _STRAIGHT * total[axis]:
+        raise DomainError(
+            'couple(): the path is not along one axis of the grid, and method "axis" knows no '
+            "other: give a path along x, y or z"
+        )
+    return AXES[axis]
+
+
+def _check_inside(found: Crossings, intervals: Array, given: bool) -> None:
+    """Refuse an interval with nothing in the grid; say where a part lies outside."""
+    inside = np.bincount(found.interval, weights=found.length, minlength=len(intervals))
+    for number, (length, (top, bottom)) in enumerate(zip(inside, intervals, strict=True)):
+        if length == 0.0:
+            raise DomainError(
+                f"couple(): interval {number} crosses no block of the grid: check x, y and depth "
+                "of the path against the grid's origin and size"
+            )
+        if given and length < (1.0 - 1e-9) * (bottom - top):
+            lost = as_quantity(kinds.LENGTH, float(bottom - top - length))
+            warn(f"{lost} of interval {number} lies outside the grid", AssumptionWarning)
+
+
+def _caution_sides(found: Crossings, grid: TensorGrid, direction: str) -> None:
+    """Warn where a path runs on an outer side of the grid and is counted as a full circle."""
+    for axis, name in enumerate(AXES):
+        if name == direction:
+            continue
+        edges = grid.edges()[axis]
+        for side, edge in zip(SIDES[name], (edges[0], edges[-1]), strict=True):
+            if np.any(found.midpoint[:, axis] == edge):
+                warn(
+                    f"the path runs on the {side} side of the grid and is counted as a full "
+                    f'circle; if nothing flows across that side, give placement="{side}"',
+                    AssumptionWarning,
+                )
+
+
+@reads
+def couple(
+    path: Path,
+    grid: TensorGrid,
+    permeability: Permeability,
+    *,
+    rw: kinds.Length,
+    skin: kinds.Skin = 0.0,
+    intervals: kinds.Coordinate | None = None,
+    method: Literal["axis"] = "axis",
+    net_to_gross: kinds.Fraction = 1.0,
+    placement: Placement = "centre",
+    invalid: Invalid = "raise",
+) -> Couplings:
+    r"""Tie a well to every block of a grid that its open intervals cross.
+
+    .. math:: WI = \frac{2\pi\,\mathrm{sector}\,k_\mathrm{normal}\,L\,\mathrm{scale}}
+                        {\ln(r_0/r_w) + \mathrm{skin}}
+
+    Parameters
+    ----------
+    path : Path
+        The well's path, along one axis of the grid.
+    grid : TensorGrid
+        The blocks.
+    permeability : Permeability
+        Along the axes of the grid; scalars, or one value per block.
+    rw : Quantity or str, length, scalar or one per interval
+        Wellbore radius; positive.
+    skin : float, or one per interval
+        Local skin of the open length. Partial opening is geometry and must not be in it.
+    intervals : list of pairs or Quantity, length, (m, 2), optional
+        Open intervals in measured depth along the path, in order; default the whole path. An
+        interval is open over its whole length: shot density is part of the skin.
+    method : {"axis"}
+        "axis": Peaceman's formula in the plane normal to the axis that the well runs along.
+    net_to_gross : float or array (nx, ny, nz)
+        Multiplies kx and ky, nothing else: between 0 and 1.
+    placement : {"centre", "corner", "west", "east", "south", "north", "top", "bottom"}
+        Where in its blocks the well stands; see `well_index`. A place off centre inside a block
+        changes nothing: the grid cannot tell.
+    invalid : {"raise", "nan"}
+        Whether one unusable row raises or gets an index of NaN with one warning.
+
+    Returns
+    -------
+    Couplings
+        One row per visit of a block and interval, in order along the path. A point on a face
+        between two blocks belongs to the block on its east, north or lower side.
+
+    Raises
+    ------
+    DomainError
+        A path that is not along one axis, an interval outside the path or the grid, intervals
+        that overlap, ln(r0/rw) below 0.5, ln(r0/rw) + skin not positive.
+    UnitsError, ShapeError
+        A missing or wrong unit; an array that does not fit the grid or the intervals.
+
+    Warns
+    -----
+    AssumptionWarning
+        A part of an interval outside the grid; a path on an outer side of the grid;
+        ln(r0/rw) below 1 or ln(r0/rw) + skin below 0.5.
+
+    References
+    ----------
+    .. [1] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eqs. 14 and 16;
+       doi:10.2118/10528-PA.
+
+    Examples
+    --------
+    >>> from wellindex import Path, Permeability, TensorGrid, couple
+    >>> grid = TensorGrid(["150 ft"] * 3, ["150 ft"] * 3, ["20 ft", "30 ft"])
+    >>> well = Path([("225 ft", "225 ft", "0 ft"), ("225 ft", "225 ft", "50 ft")])
+    >>> rows = couple(well, grid, Permeability("120 mD", "120 mD", "12 mD"), rw="0.354 ft",
+    ...               intervals=[("5 ft", "20 ft"), ("20 ft", "40 ft")])
+    >>> print(f"{rows.length.to('ft'):.1f}")
+    [15.0 20.0] ft
+    """
+    opened = _open_intervals(path, intervals)
+    count = len(opened)
+    opened, radii, skins = _joined(
+        opened, _per_interval("rw", rw, count), _per_interval("skin", skin, count)
+    )
+    found = crossings(path, grid, opened)
+    _check_inside(found, opened, intervals is not None)
+    direction = _direction(found)
+    if placement == "centre":
+        _caution_sides(found, grid, direction)
+    tally = Tally(keep_going=invalid == "nan")
+    tally.start(0, found.length.shape, found.length.size)
+    rows, plane = _axis_rows(
+        tally,
+        found,
+        grid,
+        _net_permeability(permeability, grid, found.cell, net_to_gross),
+        direction,
+        placement,
+        radii[found.interval],
+        skins[found.interval],
+    )
+    if tally.lost is not None:
+        rows = rows._replace(r0=np.where(tally.lost, np.nan, rows.r0))
+    tally.report()
+    notes = [_TIGHT if k == 0.0 else "" for k in rows.k_normal]
+    return Couplings(rows, plane=plane, direction=direction, method=method, notes=notes)
+
+
+def _net_permeability(
+    permeability: Permeability, grid: TensorGrid, cells: Array, net_to_gross: Any
+) -> Array:
+    """Return kx, ky, kz of the crossed blocks, (3, n), with net-to-gross on kx and ky."""
+    if permeability.shape not in ((), grid.shape):
+        raise ShapeError(
+            f"couple(): permeability has the shape {permeability.shape}, the grid {grid.shape}"
+        )
+    if np.shape(net_to_gross) not in ((), grid.shape):
+        raise ShapeError(
+            f"couple(): net_to_gross has the shape {np.shape(net_to_gross)}, the grid {grid.shape}"
+        )
+    k = permeability.at(cells)
+    net = net_to_gross[tuple(cells.T)] if np.ndim(net_to_gross) else net_to_gross
+    return np.stack((k[0] * net, k[1] * net, k[2]))
+
+
+def _axis_rows(
+    check: Checks,
+    found: Crossings,
+    grid: TensorGrid,
+    k: Array,
+    direction: str,
+    placement: Placement,
+    rw: Array,
+    skin: Array,
+) -> tuple[Rows, Plane]:
+    first, second = _PLANE[direction]
+    sizes = grid.sizes(found.cell)
+    plane = Plane(
+        axes=(AXES[first], AXES[second]),
+        d1=sizes[first],
+        d2=sizes[second],
+        k1=k[first],
+        k2=k[second],
+        placement=placement,
+    )
+    root_k1, root_k2 = np.sqrt(plane.k1), np.sqrt(plane.k2)
+    check.refuse(
+        np.isnan(root_k1 + root_k2),
+        'a block on the path has no valid permeability; invalid="nan" keeps the other rows',
+    )
+    axis = side_axis(direction, placement)
+    r0, sector = placed_radius(plane.d1, plane.d2, root_k1, root_k2, placement, axis)
+    k_normal = root_k1 * root_k2
+    flow_resistance(check, r0, rw, skin, k_normal)
+    ones = np.ones(len(found.length))
+    rows = Rows(
+        cell=found.cell,
+        md_in=found.md_in,
+        md_out=found.md_out,
+        depth=found.midpoint[:, 2],
+        block_depth=grid.centres(found.cell)[:, 2],
+        length=found.length,
+        k_normal=k_normal,
+        r0=r0,
+        rw=rw,
+        skin=skin,
+        sector=sector * ones,
+        scale=ones,
+    )
+    return rows, plane

@@ -1,0 +1,237 @@
+"""The table of couplings of one well."""
+
+from __future__ import annotations
+
+import os
+from typing import Any, NamedTuple
+
+import numpy as np
+
+from wellindex.index import geometric_index
+from wellindex.table import Column, aligned, as_csv, as_json
+from wellindex.units import kinds
+from wellindex.units.answers import as_quantity, number_in
+from wellindex.units.registry import Quantity
+
+Array = np.ndarray[Any, Any]
+
+
+class Rows(NamedTuple):
+    """The columns of a table of couplings in SI."""
+
+    cell: Array
+    md_in: Array
+    md_out: Array
+    depth: Array
+    block_depth: Array
+    length: Array
+    k_normal: Array
+    r0: Array
+    rw: Array
+    skin: Array
+    sector: Array
+    scale: Array
+
+
+class Plane(NamedTuple):
+    """What the equivalent radii in the plane normal to the well were found from, in SI."""
+
+    axes: tuple[str, str]
+    d1: Array
+    d2: Array
+    k1: Array
+    k2: Array
+    placement: str
+
+
+class Couplings:
+    """The couplings of one well, one row per visit of a block, in order along the well.
+
+    `couple` makes them. Each row obeys
+    ``wi = 2 pi sector k_normal length scale / (ln(r0/rw) + skin)``.
+
+    Attributes
+    ----------
+    cell : array of int, (n, 3)
+        Block indices (i, j, k) from 0.
+    plane : Plane
+        What the equivalent radii were found from, in SI.
+    direction : str
+        The axis that the well runs along.
+    method : str
+        How the equivalent radii were found.
+    notes : list of str
+        What a row's reader must know; empty where there is nothing.
+
+    Examples
+    --------
+    >>> from wellindex import Path, Permeability, TensorGrid, couple
+    >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, ["5 m", "8 m"])
+    >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "13 m")])
+    >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+    >>> rows.cell.tolist()
+    [[1, 1, 0], [1, 1, 1]]
+    >>> print(f"{rows.wi[0]:.3f}")
+    4.556 cP*m**3/bar/day
+    """
+
+    def __init__(
+        self, rows: Rows, *, plane: Plane, direction: str, method: str, notes: list[str]
+    ) -> None:
+        self._rows = rows
+        self.plane = plane
+        self.direction = direction
+        self.method = method
+        self.notes = notes
+
+    def __len__(self) -> int:
+        return len(self._rows.length)
+
+    @property
+    def cell(self) -> Array:
+        """Block indices (i, j, k) from 0, (n, 3)."""
+        return self._rows.cell.copy()
+
+    @property
+    def md_in(self) -> Quantity:
+        """Measured depth where the open length enters the block, (n,)."""
+        return as_quantity(kinds.COORDINATE, self._rows.md_in)
+
+    @property
+    def md_out(self) -> Quantity:
+        """Measured depth where the open length leaves the block, (n,)."""
+        return as_quantity(kinds.COORDINATE, self._rows.md_out)
+
+    @property
+    def depth(self) -> Quantity:
+        """Depth of the middle of the open length, (n,)."""
+        return as_quantity(kinds.COORDINATE, self._rows.depth)
+
+    @property
+    def block_depth(self) -> Quantity:
+        """Depth of the block's centre, (n,)."""
+        return as_quantity(kinds.COORDINATE, self._rows.block_depth)
+
+    @property
+    def length(self) -> Quantity:
+        """Open length in the block, (n,)."""
+        return as_quantity(kinds.LENGTH, self._rows.length)
+
+    @property
+    def k_normal(self) -> Quantity:
+        """Permeability that counts across the well, net-to-gross included, (n,)."""
+        return as_quantity(kinds.PERMEABILITY, self._rows.k_normal)
+
+    @property
+    def r0(self) -> Quantity:
+        """Equivalent radius at zero skin, to be used with the true rw, (n,)."""
+        return as_quantity(kinds.LENGTH, self._rows.r0)
+
+    @property
+    def rw(self) -> Quantity:
+        """Wellbore radius, (n,)."""
+        return as_quantity(kinds.LENGTH, self._rows.rw)
+
+    @property
+    def skin(self) -> Array:
+        """Local skin, (n,)."""
+        return self._rows.skin.copy()
+
+    @property
+    def sector(self) -> Array:
+        """Fraction of the full circle that flows, (n,)."""
+        return self._rows.sector.copy()
+
+    @property
+    def scale(self) -> Array:
+        """Factor on the index (measured over computed), (n,)."""
+        return self._rows.scale.copy()
+
+    @property
+    def wi(self) -> Quantity:
+        """Well index, (n,); zero in tight rock."""
+        return as_quantity(kinds.WELL_INDEX, self.in_si().wi)
+
+    def rows_in_si(self) -> Rows:
+        """Return the table's columns as plain arrays in SI."""
+        return self._rows
+
+    def in_si(self) -> SIRows:
+        """Return what a well needs, as plain arrays in SI."""
+        rows = self._rows
+        logarithm = np.log(rows.r0 / rows.rw) + rows.skin
+        flows = rows.k_normal != 0.0
+        wi = geometric_index(
+            rows.k_normal, rows.length * rows.scale, rows.sector, np.where(flows, logarithm, 1.0)
+        )
+        return SIRows(wi, rows.depth, rows.block_depth)
+
+    def columns(self) -> list[Column]:
+        """Return the table's columns as plain numbers in the unit system in force."""
+        rows = self._rows
+        cells = [Column(n, "", rows.cell[:, a].tolist()) for a, n in enumerate("ijk")]
+        measured = [
+            ("md_in", kinds.COORDINATE, rows.md_in),
+            ("md_out", kinds.COORDINATE, rows.md_out),
+            ("depth", kinds.COORDINATE, rows.depth),
+            ("block_depth", kinds.COORDINATE, rows.block_depth),
+            ("length", kinds.LENGTH, rows.length),
+            ("k_normal", kinds.PERMEABILITY, rows.k_normal),
+            ("r0", kinds.LENGTH, rows.r0),
+            ("rw", kinds.LENGTH, rows.rw),
+        ]
+        plain = [(n, getattr(rows, n).tolist()) for n in ("skin", "sector", "scale")]
+        wi, unit = number_in(kinds.WELL_INDEX, self.in_si().wi)
+        return [
+            *cells,
+            *(_measured(name, kind, values) for name, kind, values in measured),
+            *(Column(name, "", values) for name, values in plain),
+            Column("wi", unit, wi.tolist()),
+            Column("note", "", self.notes),
+        ]
+
+    def table(self) -> str:
+        """Return an aligned text table in the unit system in force."""
+        columns = self.columns()
+        return aligned(columns if any(self.notes) else columns[:-1])
+
+    def to_csv(self, path: str | os.PathLike[str]) -> None:
+        """Write the table as CSV in the unit system in force; the header carries the units.
+
+        Parameters
+        ----------
+        path : str or path
+            The file to write; one that exists is replaced.
+        """
+        with open(path, "w", encoding="utf-8", newline="") as file:
+            file.write(as_csv(self.columns()))
+
+    def to_json(self, path: str | os.PathLike[str]) -> None:
+        """Write the table as JSON in the unit system in force: per column, unit and values.
+
+        Parameters
+        ----------
+        path : str or path
+            The file to write; one that exists is replaced.
+        """
+        with open(path, "w", encoding="utf-8") as file:
+            file.write(as_json(self.columns()))
+
+    def __str__(self) -> str:
+        return self.table()
+
+    def __repr__(self) -> str:
+        return f"Couplings({len(self)} rows along {self.direction}, method {self.method!r})"
+
+
+class SIRows(NamedTuple):
+    """What a well needs of its couplings: index, depth and block depth, in SI."""
+
+    wi: Array
+    depth: Array
+    block_depth: Array
+
+
+def _measured(name: str, kind: kinds.Kind, values: Array) -> Column:
+    numbers, unit = number_in(kind, values)
+    return Column(name, unit, numbers.tolist())

@@ -1,0 +1,83 @@
+"""Tables whose header names each column and its unit: aligned text, CSV, JSON."""
+
+from __future__ import annotations
+
+import csv
+import io
+import json
+import math
+from collections.abc import Sequence
+from typing import Any, NamedTuple
+
+
+class Column(NamedTuple):
+    """One column: its name, its unit ("" for none) and one value per row."""
+
+    name: str
+    unit: str
+    values: Sequence[Any]
+
+
+def cell_text(value: Any) -> str:
+    """Write one value: six digits for numbers, words as they are."""
+    if isinstance(value, (bool, str)):
+        return {True: "yes", False: "no"}[value] if isinstance(value, bool) else value
+    if isinstance(value, int):
+        return str(value)
+    return f"{value:.6g}"
+
+
+def header(column: Column) -> str:
+    """Write a column's name with its unit: "length [ft]"."""
+    return f"{column.name} [{column.unit}]" if column.unit else column.name
+
+
+def aligned(columns: Sequence[Column]) -> str:
+    """Return columns as text: names, units, then rows; numbers to the right, words to the left."""
+    units = [f"[{column.unit}]" if column.unit else "" for column in columns]
+    body = [[cell_text(value) for value in column.values] for column in columns]
+    worded = [any(isinstance(v, str) for v in column.values) for column in columns]
+    widths = [
+        max(len(text) for text in (column.name, unit, *cells))
+        for column, unit, cells in zip(columns, units, body, strict=True)
+    ]
+
+    def line(parts: Sequence[str]) -> str:
+        padded = [
+            part.ljust(width) if words else part.rjust(width)
+            for part, width, words in zip(parts, widths, worded, strict=True)
+        ]
+        return "  ".join(padded).rstrip()
+
+    lines = [line([column.name for column in columns])]
+    if any(units):
+        lines.append(line(units))
+    lines.append("  ".join("-" * width for width in widths))
+    lines.extend(line(row) for row in zip(*body, strict=True))
+    return "\n".join(lines)
+
+
+def as_csv(columns: Sequence[Column]) -> str:
+    """Return columns as CSV with full digits; the header carries the units."""
+    text = io.StringIO()
+    writer = csv.writer(text, lineterminator="\n")
+    writer.writerow([header(column) for column in columns])
+    writer.writerows(zip(*(column.values for column in columns), strict=True))
+    return text.getvalue()
+
+
+def as_plain(columns: Sequence[Column]) -> dict[str, Any]:
+    """Return columns as a dictionary ready for JSON; a value that is not a number becomes null."""
+    return {
+        column.name: {"unit": column.unit or None, "values": [_finite(v) for v in column.values]}
+        for column in columns
+    }
+
+
+def as_json(columns: Sequence[Column]) -> str:
+    """Return columns as JSON with full digits."""
+    return json.dumps(as_plain(columns), indent=2, allow_nan=False) + "\n"
+
+
+def _finite(value: Any) -> Any:
+    return None if isinstance(value, float) and not math.isfinite(value) else value

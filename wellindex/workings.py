@@ -1,0 +1,214 @@
+"""The calculation of a coupling shown step by step, with its numbers and units."""
+
+from __future__ import annotations
+
+import math
+from typing import Any, NamedTuple
+
+from wellindex.couplings import Couplings
+from wellindex.errors import DomainError, ShapeError
+from wellindex.index import TWO_PI
+from wellindex.radius.closed_form import HALF_EXP_MINUS_GAMMA
+from wellindex.state import WellState
+from wellindex.units import kinds
+from wellindex.units.answers import as_quantity
+from wellindex.units.boundary import reads
+from wellindex.units.registry import Quantity
+
+
+class Step(NamedTuple):
+    """One step: what is found, the formula, the formula with its numbers, the result."""
+
+    title: str
+    formula: str
+    numbers: str
+    result: str
+
+    def text(self) -> str:
+        """Return the step as indented text."""
+        lines = [self.title, f"    {self.formula}"]
+        if self.numbers:
+            lines.append(f"    = {self.numbers}")
+        return "\n".join([*lines, f"    = {self.result}"])
+
+
+class Workings:
+    """Steps of the calculation of some couplings; ``print`` shows them.
+
+    Attributes
+    ----------
+    steps : dict of int to list of Step
+        The steps of each coupling, by its row.
+    """
+
+    def __init__(self, titles: dict[int, str], steps: dict[int, list[Step]]) -> None:
+        self._titles = titles
+        self.steps = steps
+
+    def __str__(self) -> str:
+        parts = []
+        for row, steps in self.steps.items():
+            lines = [self._titles[row], "=" * len(self._titles[row])]
+            lines += [f"{n}. {step.text()}" for n, step in enumerate(steps, start=1)]
+            parts.append("\n".join(lines))
+        return "\n\n".join(parts)
+
+
+@reads
+def workings(
+    couplings: Couplings, row: int | None = None, *, state: WellState | None = None
+) -> Workings:
+    """Show how the well index of each coupling comes about, to attach to one's notes.
+
+    Parameters
+    ----------
+    couplings : Couplings
+        From `couple`.
+    row : int, optional
+        One coupling, counted from 0; default all.
+    state : WellState, optional
+        Of a well on these couplings: its rates are shown too.
+
+    Returns
+    -------
+    Workings
+        Prints as text in the unit system in force when it was made.
+
+    Raises
+    ------
+    DomainError
+        A row that the table does not have, or a state of another well.
+    ShapeError
+        A state that holds many moments.
+
+    References
+    ----------
+    .. [1] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eqs. 14 and 16;
+       doi:10.2118/10528-PA.
+
+    Examples
+    --------
+    >>> from wellindex import Path, Permeability, TensorGrid, couple, workings
+    >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+    >>> path = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+    >>> rows = couple(path, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+    >>> print(workings(rows).steps[0][1].text())
+    Permeability across the well
+        k = sqrt(kx ky)
+        = sqrt(90 mD x 90 mD)
+        = 90 mD
+    """
+    if row is not None and not 0 <= row < len(couplings):
+        raise DomainError(f"workings(): row {row} is not in the table of {len(couplings)} rows")
+    if state is not None and state.couplings is not couplings:
+        raise DomainError("workings(): the state belongs to other couplings")
+    if state is not None and state.coupling_rate.ndim != 1:
+        raise ShapeError("workings(): the state holds many moments; give one of them")
+    chosen = range(len(couplings)) if row is None else [row]
+    titles = {}
+    steps = {}
+    for n in chosen:
+        block = tuple(couplings.cell[n].tolist())
+        titles[n] = f"Coupling {n} in block {block}, well along {couplings.direction}"
+        steps[n] = [*_index_steps(couplings, n), *(_rate_steps(state, n) if state else [])]
+    return Workings(titles, steps)
+
+
+def _show(kind: kinds.Kind, value: Any) -> str:
+    return str(as_quantity(kind, float(value)))
+
+
+def _index_steps(couplings: Couplings, n: int) -> list[Step]:
+    rows, plane = couplings.rows_in_si(), couplings.plane
+    a, b = plane.axes
+    d1, d2 = (_show(kinds.LENGTH, d[n]) for d in (plane.d1, plane.d2))
+    k1, k2 = (_show(kinds.PERMEABILITY, k[n]) for k in (plane.k1, plane.k2))
+    r0, rw, length = (_show(kinds.LENGTH, x[n]) for x in (rows.r0, rows.rw, rows.length))
+    k_normal = _show(kinds.PERMEABILITY, rows.k_normal[n])
+    logarithm = math.log(rows.r0[n] / rows.rw[n])
+    resistance = logarithm + rows.skin[n]
+    steps = [
+        Step(
+            "Equivalent radius (Peaceman 1983, eq. 14)",
+            f"r0 = (exp(-gamma)/2) sqrt(k{b} d{a}^2 + k{a} d{b}^2) / (sqrt(k{a}) + sqrt(k{b}))",
+            f"{HALF_EXP_MINUS_GAMMA:.6g} sqrt({k2} x ({d1})^2 + {k1} x ({d2})^2) / "
+            f"(sqrt({k1}) + sqrt({k2}))",
+            r0,
+        ),
+        Step(
+            "Permeability across the well", f"k = sqrt(k{a} k{b})", f"sqrt({k1} x {k2})", k_normal
+        ),
+    ]
+    if plane.placement != "centre":
+        steps[0] = steps[0]._replace(
+            title=f"{steps[0].title}, well placed: {plane.placement}",
+            formula=steps[0].formula + " x the factor of the place (see the docs)",
+        )
+    if rows.k_normal[n] == 0.0:
+        return [*steps, Step("Well index", "wi = 0 where nothing flows across the well", "", "0")]
+    steps.append(
+        Step(
+            "Flow resistance",
+            "ln(r0/rw) + skin",
+            f"ln({r0} / {rw}) + {rows.skin[n]:.6g} = {logarithm:.6g} + {rows.skin[n]:.6g}",
+            f"{resistance:.6g}",
+        )
+    )
+    wi = couplings.in_si().wi[n]
+    steps.append(
+        Step(
+            "Well index",
+            "wi = 2 pi sector k length scale / (ln(r0/rw) + skin)",
+            f"{TWO_PI:.6g} x {rows.sector[n]:.6g} x {k_normal} x {length} x "
+            f"{rows.scale[n]:.6g} / {resistance:.6g}",
+            f"{_in_product_units(wi)} = {_show(kinds.WELL_INDEX, wi)}",
+        )
+    )
+    return steps
+
+
+def _in_product_units(wi: float) -> Quantity:
+    """Return an index in the product of the units of permeability and length."""
+    permeability = as_quantity(kinds.PERMEABILITY, 1.0).units
+    length = as_quantity(kinds.LENGTH, 1.0).units
+    return as_quantity(kinds.WELL_INDEX, wi).to(permeability * length)
+
+
+def _rate_steps(state: WellState, n: int) -> list[Step]:
+    basis = state.basis
+    rows = state.couplings.in_si()
+    wellbore, drawdown = state.coupling_pressure[n], state.coupling_drawdown[n]
+    steps = []
+    if basis.fluid.density is not None:
+        gradient = f"{basis.fluid.density} x g x "
+        depth, block_depth = (_show(kinds.COORDINATE, d[n]) for d in (rows.depth, rows.block_depth))
+        steps = [
+            Step(
+                "Pressure in the wellbore at the coupling",
+                "p_well = pwf + density g (depth - reference depth)",
+                f"{state.pwf} + {gradient}({depth} - {state.reference_depth})",
+                f"{wellbore}",
+            ),
+            Step(
+                "Block pressure carried to the coupling's depth",
+                "p_block + density g (depth - block depth)",
+                f"{state.block_pressure[n]} + {gradient}({depth} - {block_depth})",
+                f"{wellbore + drawdown}",
+            ),
+        ]
+    mobility = f"{basis.relative_permeability[n]:.6g} / {basis.fluid.viscosity}"
+    return [
+        *steps,
+        Step(
+            "Reservoir rate of the coupling",
+            "q = wi (kr / viscosity) (p_block - p_well)",
+            f"{_show(kinds.WELL_INDEX, rows.wi[n])} x {mobility} x {drawdown}",
+            f"{state.coupling_rate[n]}",
+        ),
+        Step(
+            "Surface rate of the coupling",
+            "q / formation volume factor",
+            f"{state.coupling_rate[n]} / {basis.fluid.formation_volume_factor}",
+            f"{state.coupling_surface_rate[n]}",
+        ),
+    ]
