@@ -72,7 +72,7 @@ class Couplings:
     >>> rows.cell.tolist()
     [[1, 1, 0], [1, 1, 1]]
     >>> print(f"{rows.wi[0]:.3f}")
-    4.556 cP*m**3/bar/day
+    4.557 cP*m**3/bar/day
     """
 
     def __init__(

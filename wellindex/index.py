@@ -176,7 +176,7 @@ def well_index(
     >>> wi = well_index(dx="150 ft", dy="150 ft", dz="20 ft", kx="120 mD", ky="120 mD",
     ...                 kz="12 mD", rw="0.354 ft", skin=2)
     >>> print(f"{wi.to('cP*rb/day/psi'):.3f}")
-    2.639 cP*rb/day/psi
+    2.642 cP*rb/day/psi
     """
     d1, d2, d3, k1, k2 = _plane(direction, dx, dy, dz, kx, ky, kz)
     root_k1, root_k2 = sqrt(k1), sqrt(k2)

@@ -70,7 +70,7 @@ class Well:
     >>> oil = Liquid(viscosity="2 cP", formation_volume_factor=1.25)
     >>> state = Well(rows, oil).at_pressure("150 bar", block_pressure="200 bar")
     >>> print(f"{state.rate:.1f}, {state.reservoir_rate:.1f}")
-    182.2 sm3/day, 227.8 rm3/day
+    182.3 sm3/day, 227.8 rm3/day
     """
 
     @reads

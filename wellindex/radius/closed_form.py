@@ -137,7 +137,7 @@ def equivalent_radius(
     19.8506 m
     >>> r0 = equivalent_radius(dx="100 m", dy="50 m", kx="90 mD", ky="10 mD", placement="corner")
     >>> print(f"{r0:.3f}")
-    36.944 m
+    44.990 m
     """
     root_kx, root_ky = sqrt(kx), sqrt(ky)
     check.refuse(
