@@ -16,7 +16,7 @@ from wellindex.index import (
 )
 from wellindex.radius.closed_form import placed_radius
 from wellindex.rock import Permeability
-from wellindex.space.crossing import Crossings, crossings
+from wellindex.space.crossing import Crossings, crossings, onto_faces
 from wellindex.space.grid import AXES, SIDES, TensorGrid
 from wellindex.space.path import Path
 from wellindex.units import kinds
@@ -75,7 +75,7 @@ def _joined(intervals: Array, rw: Array, skin: Array) -> tuple[Array, Array, Arr
     keep = [0]
     ends = [intervals[0, 1]]
     for n in range(1, len(intervals)):
-        touches = intervals[n, 0] <= ends[-1] * (1 + 1e-12)
+        touches = intervals[n, 0] - ends[-1] <= 1e-12 * abs(ends[-1])
         if touches and rw[n] == rw[keep[-1]] and skin[n] == skin[keep[-1]]:
             ends[-1] = intervals[n, 1]
         else:
@@ -99,15 +99,18 @@ def _direction(found: Crossings) -> str:
 def _check_inside(found: Crossings, intervals: Array, given: bool) -> None:
     """Refuse an interval with nothing in the grid; say where a part lies outside."""
     inside = np.bincount(found.interval, weights=found.length, minlength=len(intervals))
-    for number, (length, (top, bottom)) in enumerate(zip(inside, intervals, strict=True)):
+    for length, ends in zip(inside, intervals, strict=True):
+        top, bottom = (as_quantity(kinds.COORDINATE, float(end)) for end in ends)
+        opened = f"the open interval from {top} to {bottom} in measured depth"
         if length == 0.0:
             raise DomainError(
-                f"couple(): interval {number} crosses no block of the grid: check x, y and depth "
-                "of the path against the grid's origin and size"
+                f"couple(): {opened} crosses no block of the grid: check x, y and depth of the "
+                "path against the grid's origin and size"
             )
-        if given and length < (1.0 - 1e-9) * (bottom - top):
-            lost = as_quantity(kinds.LENGTH, float(bottom - top - length))
-            warn(f"{lost} of interval {number} lies outside the grid", AssumptionWarning)
+        size = float(ends[1] - ends[0])
+        if given and length < (1.0 - 1e-9) * size:
+            lost = as_quantity(kinds.LENGTH, size - float(length))
+            warn(f"{lost} of {opened} lies outside the grid", AssumptionWarning)
 
 
 def _caution_sides(found: Crossings, grid: TensorGrid, direction: str) -> None:
@@ -117,7 +120,7 @@ def _caution_sides(found: Crossings, grid: TensorGrid, direction: str) -> None:
             continue
         edges = grid.edges()[axis]
         for side, edge in zip(SIDES[name], (edges[0], edges[-1]), strict=True):
-            if np.any(found.midpoint[:, axis] == edge):
+            if np.any(onto_faces(found.midpoint[:, axis], edges) == edge):
                 warn(
                     f"the path runs on the {side} side of the grid and is counted as a full "
                     f'circle; if nothing flows across that side, give placement="{side}"',
@@ -273,7 +276,7 @@ def _axis_rows(
     root_k1, root_k2 = np.sqrt(plane.k1), np.sqrt(plane.k2)
     check.refuse(
         np.isnan(root_k1 + root_k2),
-        'a block on the path has no valid permeability; invalid="nan" keeps the other rows',
+        'invalid="nan" keeps the other rows: a block on the path has no valid permeability',
     )
     axis = side_axis(direction, placement)
     r0, sector = placed_radius(plane.d1, plane.d2, root_k1, root_k2, placement, axis)

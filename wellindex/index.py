@@ -6,7 +6,7 @@ import math
 from typing import Any, Literal
 
 from wellindex.errors import DomainError
-from wellindex.radius.closed_form import placed_radius
+from wellindex.radius.closed_form import centred_radius, placed_radius
 from wellindex.units import kinds
 from wellindex.units.boundary import quantities
 from wellindex.units.checks import Checks
@@ -63,7 +63,10 @@ def flow_resistance(check: Checks, r0: Any, rw: Any, skin: Any, k_normal: Any) -
     """
     logarithm = log(r0 / rw)
     total = logarithm + skin
-    if least(logarithm) >= DOUBTFUL_LOGARITHM and least(total) >= DOUBTFUL_SUM:
+    if total.__class__ is float:
+        if logarithm >= DOUBTFUL_LOGARITHM and total >= DOUBTFUL_SUM:
+            return total
+    elif least(logarithm) >= DOUBTFUL_LOGARITHM and least(total) >= DOUBTFUL_SUM:
         return total
     flows = k_normal > 0.0
     check.refuse(flows & (logarithm < SMALLEST_LOGARITHM), _TOO_SMALL, logarithm)
@@ -178,36 +181,32 @@ def well_index(
     >>> print(f"{wi.to('cP*rb/day/psi'):.3f}")
     2.642 cP*rb/day/psi
     """
-    d1, d2, d3, k1, k2 = _plane(direction, dx, dy, dz, kx, ky, kz)
+    if direction == "z":
+        d1, d2, d3, k1, k2 = dx, dy, dz, kx, ky
+    elif direction == "x":
+        d1, d2, d3, k1, k2 = dy, dz, dx, ky, kz
+    else:
+        d1, d2, d3, k1, k2 = dx, dz, dy, kx, kz
     root_k1, root_k2 = sqrt(k1), sqrt(k2)
-    if equivalent_radius is None:
-        if sector.__class__ is not float or sector != 1.0:
+    if equivalent_radius is not None:
+        if placement != "centre":
             raise DomainError(
-                "well_index(): a sector has an equivalent radius of its own; give both, or say "
-                "where the well stands with placement="
+                "well_index(): give either placement or an equivalent radius with its sector"
             )
+        r0 = equivalent_radius
+    elif sector.__class__ is not float or sector != 1.0:
+        raise DomainError(
+            "well_index(): a sector has an equivalent radius of its own; give both, or say where "
+            "the well stands with placement="
+        )
+    elif placement == "centre":
+        r0 = centred_radius(d1, d2, root_k1, root_k2)
+    else:
         axis = side_axis(direction, placement)
         r0, sector = placed_radius(d1, d2, root_k1, root_k2, placement, axis)
-    elif placement != "centre":
-        raise DomainError(
-            "well_index(): give either placement or an equivalent radius with its sector"
-        )
-    else:
-        r0 = equivalent_radius
     k_normal = root_k1 * root_k2
     resistance = flow_resistance(check, r0, rw, skin, k_normal)
     return geometric_index(k_normal, d3 if length is None else length, sector, resistance)
-
-
-def _plane(
-    direction: str, dx: Any, dy: Any, dz: Any, kx: Any, ky: Any, kz: Any
-) -> tuple[Any, Any, Any, Any, Any]:
-    """Return the two widths normal to the well, the size along it and the two permeabilities."""
-    if direction == "z":
-        return dx, dy, dz, kx, ky
-    if direction == "x":
-        return dy, dz, dx, ky, kz
-    return dx, dz, dy, kx, kz
 
 
 @quantities

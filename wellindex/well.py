@@ -202,21 +202,27 @@ class Well:
         """
         surface = rate.kind is kinds.SURFACE_RATE
         given = rate.value * self._liquid.volume_factor if surface else rate.value
-        self._check_sign(given)
+        given = self._with_right_sign(given, invalid)
         blocks = self._at_couplings(block_pressure)
         given = self._in_batch("rate", given, blocks)
         flows = self._transmissivity
         open_flow = np.sum(flows * (blocks - self._head), axis=-1)
         return self._state((open_flow - given) / np.sum(flows), blocks, invalid)
 
-    def _check_sign(self, rate: Any) -> None:
+    def _with_right_sign(self, rate: Any, invalid: Invalid) -> Any:
+        """Refuse a rate against the role, or mark it NaN."""
         against = rate < 0.0 if self.role == "producer" else rate > 0.0
-        if np.any(against):
-            sign = "negative" if self.role == "producer" else "positive"
-            right = "positive out of" if self.role == "producer" else "negative into"
-            raise DomainError(
-                f"a {self.role}'s rate is {right} the ground; the rate given is {sign}"
-            )
+        if not np.any(against):
+            return rate
+        article, right, sign = (
+            ("a", "positive out of", "negative")
+            if self.role == "producer"
+            else ("an", "negative into", "positive")
+        )
+        reason = f"{article} {self.role}'s rate is {right} the ground; the rate given is {sign}"
+        if invalid == "nan":
+            return _marked(np.asarray(against), rate, reason)
+        raise DomainError(reason)
 
     def _at_couplings(self, block_pressure: Any) -> Array:
         """Carry block pressures to the couplings' depths, (..., n)."""
@@ -262,11 +268,7 @@ class Well:
     ) -> Array:
         """Refuse a wellbore pressure below zero, or mark it NaN."""
         if invalid == "nan":
-            tally = Tally(keep_going=True)
-            tally.start(0, below.shape, below.size)
-            tally.refuse(np.ravel(below), "a bottom-hole pressure below zero")
-            tally.report()
-            return np.where(below, np.nan, pwf)
+            return _marked(below, pwf, "a bottom-hole pressure below zero")
         worst = as_quantity(kinds.PRESSURE, float(np.nanmin(wellbore)))
         raise DomainError(
             f"this needs a pressure of {worst} in the wellbore, and none is below zero"
@@ -286,3 +288,12 @@ class Well:
 
     def __repr__(self) -> str:
         return f"Well({self.role}, {len(self.couplings)} couplings)"
+
+
+def _marked(bad: Array, values: Any, reason: str) -> Array:
+    """Replace unusable elements by NaN, with one warning."""
+    tally = Tally(keep_going=True)
+    tally.start(0, bad.shape, bad.size)
+    tally.refuse(np.ravel(bad), reason)
+    tally.report()
+    return np.where(bad, np.nan, values)

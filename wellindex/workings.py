@@ -5,15 +5,22 @@ from __future__ import annotations
 import math
 from typing import Any, NamedTuple
 
-from wellindex.couplings import Couplings
+from wellindex.couplings import Couplings, Plane
 from wellindex.errors import DomainError, ShapeError
-from wellindex.index import TWO_PI
+from wellindex.index import TWO_PI, side_axis
 from wellindex.radius.closed_form import HALF_EXP_MINUS_GAMMA
 from wellindex.state import WellState
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
 from wellindex.units.registry import Quantity
+
+#: The exponent of a placed well's factor by the axis that its side is normal to (None: corner).
+_EXPONENTS = {
+    0: "u x atan(1 / u)",
+    1: "atan(u) / u",
+    None: "(u x atan(1 / u) + atan(u) / u + 1) / 2",
+}
 
 
 class Step(NamedTuple):
@@ -118,53 +125,74 @@ def _show(kind: kinds.Kind, value: Any) -> str:
     return str(as_quantity(kind, float(value)))
 
 
+def _plane_texts(plane: Plane, n: int) -> tuple[str, str, str, str]:
+    """Return the widths and the permeabilities across the well as text."""
+    d1, d2 = (_show(kinds.LENGTH, d[n]) for d in (plane.d1, plane.d2))
+    k1, k2 = (_show(kinds.PERMEABILITY, k[n]) for k in (plane.k1, plane.k2))
+    return d1, d2, k1, k2
+
+
+def _radius_steps(couplings: Couplings, n: int) -> list[Step]:
+    plane = couplings.plane
+    a, b = plane.axes
+    d1, d2, k1, k2 = _plane_texts(plane, n)
+    centred = Step(
+        "Equivalent radius (Peaceman 1983, eq. 14)",
+        f"r0 = (exp(-gamma)/2) sqrt(k{b} d{a}^2 + k{a} d{b}^2) / (sqrt(k{a}) + sqrt(k{b}))",
+        f"{HALF_EXP_MINUS_GAMMA:.6g} sqrt({k2} x ({d1})^2 + {k1} x ({d2})^2) / "
+        f"(sqrt({k1}) + sqrt({k2}))",
+        _show(kinds.LENGTH, couplings.rows_in_si().r0[n]),
+    )
+    if plane.placement == "centre":
+        return [centred]
+    shape = f"{plane.d1[n] / plane.d2[n] * math.sqrt(plane.k2[n] / plane.k1[n]):.6g}"
+    exponent = _EXPONENTS[side_axis(couplings.direction, plane.placement)]
+    return [
+        Step(
+            "Shape of the block in stretched coordinates",
+            f"u = (d{a} / d{b}) sqrt(k{b} / k{a})",
+            f"({d1} / {d2}) sqrt({k2} / {k1})",
+            shape,
+        ),
+        centred._replace(
+            title=f"{centred.title}, well placed: {plane.placement}",
+            formula=f"{centred.formula} x exp({exponent})",
+            numbers=f"{centred.numbers} x exp({exponent.replace('u', shape)})",
+        ),
+    ]
+
+
 def _index_steps(couplings: Couplings, n: int) -> list[Step]:
     rows, plane = couplings.rows_in_si(), couplings.plane
     a, b = plane.axes
-    d1, d2 = (_show(kinds.LENGTH, d[n]) for d in (plane.d1, plane.d2))
-    k1, k2 = (_show(kinds.PERMEABILITY, k[n]) for k in (plane.k1, plane.k2))
-    r0, rw, length = (_show(kinds.LENGTH, x[n]) for x in (rows.r0, rows.rw, rows.length))
+    _, _, k1, k2 = _plane_texts(plane, n)
     k_normal = _show(kinds.PERMEABILITY, rows.k_normal[n])
+    across = Step(
+        "Permeability across the well", f"k = sqrt(k{a} k{b})", f"sqrt({k1} x {k2})", k_normal
+    )
+    if rows.k_normal[n] == 0.0:
+        return [across, Step("Well index", "wi = 0 where nothing flows across the well", "", "0")]
+    r0, rw, length = (_show(kinds.LENGTH, x[n]) for x in (rows.r0, rows.rw, rows.length))
     logarithm = math.log(rows.r0[n] / rows.rw[n])
     resistance = logarithm + rows.skin[n]
-    steps = [
-        Step(
-            "Equivalent radius (Peaceman 1983, eq. 14)",
-            f"r0 = (exp(-gamma)/2) sqrt(k{b} d{a}^2 + k{a} d{b}^2) / (sqrt(k{a}) + sqrt(k{b}))",
-            f"{HALF_EXP_MINUS_GAMMA:.6g} sqrt({k2} x ({d1})^2 + {k1} x ({d2})^2) / "
-            f"(sqrt({k1}) + sqrt({k2}))",
-            r0,
-        ),
-        Step(
-            "Permeability across the well", f"k = sqrt(k{a} k{b})", f"sqrt({k1} x {k2})", k_normal
-        ),
-    ]
-    if plane.placement != "centre":
-        steps[0] = steps[0]._replace(
-            title=f"{steps[0].title}, well placed: {plane.placement}",
-            formula=steps[0].formula + " x the factor of the place (see the docs)",
-        )
-    if rows.k_normal[n] == 0.0:
-        return [*steps, Step("Well index", "wi = 0 where nothing flows across the well", "", "0")]
-    steps.append(
+    wi = couplings.in_si().wi[n]
+    return [
+        *_radius_steps(couplings, n),
+        across,
         Step(
             "Flow resistance",
             "ln(r0/rw) + skin",
             f"ln({r0} / {rw}) + {rows.skin[n]:.6g} = {logarithm:.6g} + {rows.skin[n]:.6g}",
             f"{resistance:.6g}",
-        )
-    )
-    wi = couplings.in_si().wi[n]
-    steps.append(
+        ),
         Step(
             "Well index",
             "wi = 2 pi sector k length scale / (ln(r0/rw) + skin)",
             f"{TWO_PI:.6g} x {rows.sector[n]:.6g} x {k_normal} x {length} x "
             f"{rows.scale[n]:.6g} / {resistance:.6g}",
             f"{_in_product_units(wi)} = {_show(kinds.WELL_INDEX, wi)}",
-        )
-    )
-    return steps
+        ),
+    ]
 
 
 def _in_product_units(wi: float) -> Quantity:

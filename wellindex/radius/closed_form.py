@@ -31,7 +31,7 @@ def centred_radius(d1: Any, d2: Any, root_k1: Any, root_k2: Any) -> Any:
     both are, it is that of isotropic rock (the index is zero all the same).
     """
     both = root_k1 + root_k2
-    if least(both) == 0.0:
+    if (both if both.__class__ is float else least(both)) == 0.0:
         tight = where(both == 0.0, 1.0, 0.0)
         root_k1, root_k2 = root_k1 + tight, root_k2 + tight
         both = root_k1 + root_k2

@@ -16,6 +16,8 @@ Array = np.ndarray[Any, Any]
 
 #: Pieces shorter than this part of a leg are rounding at an edge of the grid.
 _SLIVER = 1e-12
+#: A coordinate nearer to a face than this part of the grid's largest is on the face.
+_ON_FACE = 1e-12
 
 
 class Crossings(NamedTuple):
@@ -28,6 +30,14 @@ class Crossings(NamedTuple):
     length: Array
     components: Array
     midpoint: Array
+
+
+def onto_faces(x: Array, faces: Array) -> Array:
+    """Move coordinates that miss a face of the grid by rounding alone onto it."""
+    right = np.clip(np.searchsorted(faces, x), 1, len(faces) - 1)
+    left, right = faces[right - 1], faces[right]
+    nearest = np.where(x - left < right - x, left, right)
+    return np.where(np.abs(x - nearest) <= _ON_FACE * np.abs(faces).max(), nearest, x)
 
 
 def _pieces(start: Array, stop: Array, edges: tuple[Array, ...]) -> Array:
@@ -62,6 +72,8 @@ def _cells(points: Array, edges: tuple[Array, ...]) -> Array:
 
 def _leg_rows(start: Array, stop: Array, grid: TensorGrid) -> tuple[Array, Array, Array]:
     """Return cell, and fractions in and out, of the pieces of one leg that lie in blocks."""
+    ends = np.stack((start, stop), axis=1)
+    start, stop = np.array([onto_faces(*each) for each in zip(ends, grid.edges(), strict=True)]).T
     cuts = _pieces(start, stop, grid.edges())
     middle = 0.5 * (cuts[1:] + cuts[:-1])
     # A coordinate that does not change is taken as it is: rounding must not move it off a face.

@@ -83,7 +83,7 @@ class TensorGrid:
                 f"TensorGrid(): present is an array of bool of shape {self.shape}; "
                 f"got {mask.dtype} {mask.shape}"
             )
-        return mask
+        return mask.copy()
 
     @property
     def dx(self) -> Quantity:
@@ -120,9 +120,14 @@ class TensorGrid:
 
         Raises
         ------
+        ShapeError
+            A cell that is not three whole numbers.
         DomainError
             The grid has no such block.
         """
+        indices = np.asarray(cell)
+        if indices.shape != (3,) or indices.dtype.kind not in "iu":
+            raise ShapeError(f"a block is three whole numbers (i, j, k); got {cell!r}")
         for axis, index, count in zip("ijk", cell, self.shape, strict=True):
             if not 0 <= index < count:
                 raise DomainError(f"{axis} = {index} is outside the grid: 0 to {count - 1}")

@@ -4,16 +4,15 @@ from __future__ import annotations
 
 import functools
 import inspect
-import math
 from collections.abc import Callable
-from typing import Any, Concatenate, NamedTuple, ParamSpec, Protocol, TypeVar, cast
+from typing import Any, Concatenate, ParamSpec, Protocol, TypeVar, cast
 
 import numpy as np
 
 from wellindex.units.answers import as_quantity
 from wellindex.units.checks import AT_ONCE, Checks, Tally
-from wellindex.units.declaration import Declaration, Parameter
-from wellindex.units.evaluate import Careful, full, scale_arrays
+from wellindex.units.declaration import Declaration
+from wellindex.units.evaluate import Careful, full, plan_for, scale_arrays
 from wellindex.units.kernel import compile_si
 from wellindex.units.reading import OUR_QUANTITY, Problem
 from wellindex.units.registry import Quantity
@@ -52,7 +51,7 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
     declaration = Declaration(body, "check")
     if declaration.answer is None:
         raise TypeError(f"{declaration.name}: the answer is declared with no kind")
-    plan = {name: _plan(parameter) for name, parameter in declaration.parameters.items()}
+    plan = {name: plan_for(parameter) for name, parameter in declaration.parameters.items()}
     careful = Careful(body, declaration)
     defaults = declaration.defaults
     expected = len(declaration.parameters)
@@ -68,7 +67,6 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
         values = defaults.copy()
         arrays: dict[str, Any] = {}
         scales: list[float] = []
-        spans: list[tuple[float, float]] = []
         all_one_sided = True
         for name, value in given.items():
             if name not in plan:
@@ -87,7 +85,6 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
                 elif magnitude.__class__ is array_class and magnitude.dtype is float64:
                     arrays[name] = magnitude
                     scales.append(known[1])
-                    spans.append(span)
                     all_one_sided = all_one_sided and one_sided
                 else:
                     return careful(given)
@@ -99,40 +96,23 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
                 values[name] = value
             else:
                 return careful(given)
-        if arrays and not (
-            values.get("invalid") != "nan"
-            and scale_arrays(arrays, scales, spans, all_one_sided, values)
-        ):
-            return careful(given)
+        shape = None
+        if arrays:
+            if values.get("invalid") == "nan":
+                return careful(given)
+            shape = scale_arrays(arrays, scales, plan, all_one_sided, values)
+            if shape is None:
+                return careful(given)
         if len(values) != expected:
             return careful(given)
         result = body(AT_ONCE, **values)  # type: ignore[call-arg]
-        if arrays:
-            result = full(result, next(iter(arrays.values())).shape)
+        if shape is not None and (result.__class__ is not array_class or result.shape != shape):
+            result = full(result, shape)
         return as_quantity(answer, result)
 
     formula.__signature__ = declaration.signature  # type: ignore[attr-defined]
     formula.si = compile_si(body, declaration)  # type: ignore[attr-defined]
     return cast("Formula[P]", formula)
-
-
-class _Plan(NamedTuple):
-    """What the common forms of one argument are read with."""
-
-    factors: dict[int, Any]
-    span: tuple[float, float]
-    one_sided: bool
-    bare: bool
-    choices: tuple[Any, ...]
-
-
-def _plan(parameter: Parameter) -> _Plan:
-    reader = parameter.reader
-    if reader is None:
-        return _Plan({}, (0.0, 0.0), False, False, parameter.choices)
-    one_sided = reader.low <= 0.0 and reader.high == math.inf
-    bare = not reader.kind.dimension
-    return _Plan(reader.ours, (reader.low, reader.high), one_sided, bare, ())
 
 
 def reads(body: Callable[P, R]) -> Callable[P, R]:

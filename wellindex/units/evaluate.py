@@ -4,14 +4,14 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Iterable, Iterator
-from typing import Any
+from typing import Any, NamedTuple
 
 import numpy as np
 import pint
 
 from wellindex.units.answers import as_quantity, in_other_registry
 from wellindex.units.checks import AT_ONCE, Tally
-from wellindex.units.declaration import Declaration
+from wellindex.units.declaration import Declaration, Parameter
 from wellindex.units.reading import Problem
 from wellindex.units.registry import ureg
 
@@ -21,52 +21,70 @@ BLOCK = 16384
 #: Arrays up to this size are scaled and checked together: one array operation serves them all.
 SHORT = 256
 
-#: Tables of factors kept for calls alike.
-REMEMBERED = 32
 
-_tables: dict[tuple[float, ...], np.ndarray[Any, Any]] = {}
+class Plan(NamedTuple):
+    """What the common forms of one argument are read with."""
+
+    factors: dict[int, Any]
+    span: tuple[float, float]
+    one_sided: bool
+    bare: bool
+    choices: tuple[Any, ...]
+
+
+def plan_for(parameter: Parameter) -> Plan:
+    reader = parameter.reader
+    if reader is None:
+        return Plan({}, (0.0, 0.0), False, False, parameter.choices)
+    one_sided = reader.low <= 0.0 and reader.high == math.inf
+    bare = not reader.kind.dimension
+    return Plan(reader.ours, (reader.low, reader.high), one_sided, bare, ())
+
+
+_latest: list[tuple[list[float], int, np.ndarray[Any, Any]]] = [([], 0, np.empty((0, 0)))]
 
 
 def _factor_table(factors: list[float], size: int) -> np.ndarray[Any, Any]:
     """Return one row of equal factors per array: multiplying like shapes costs half as much."""
-    key = (*factors, size)
-    if key not in _tables:
-        if len(_tables) >= REMEMBERED:
-            _tables.clear()
-        _tables[key] = np.repeat(np.array(factors)[:, np.newaxis], size, axis=1)
-    return _tables[key]
+    known_factors, known_size, table = _latest[0]
+    if known_factors != factors or known_size != size:
+        table = np.repeat(np.array(factors)[:, np.newaxis], size, axis=1)
+        _latest[0] = (factors, size, table)
+    return table
 
 
 def scale_arrays(
     arrays: dict[str, Any],
     factors: list[float],
-    spans: list[tuple[float, float]],
+    plan: dict[str, Plan],
     one_sided: bool,
     values: dict[str, Any],
-) -> bool:
-    """Put arrays of our quantities into `values` in SI; False where it is not that simple.
+) -> tuple[int, ...] | None:
+    """Put arrays of our quantities into `values` in SI; return their shape.
 
-    `one_sided` says that every range holds all positive finite numbers.
+    None, where it is not that simple. `one_sided` says that every range holds all positive
+    finite numbers.
     """
     magnitudes = list(arrays.values())
-    shape = magnitudes[0].shape
+    shape: tuple[int, ...] = magnitudes[0].shape
     if one_sided and len(shape) == 1 and 0 < shape[0] <= SHORT:
         try:
             table = np.array(magnitudes)
         except ValueError:
-            return False
+            return None
         table *= _factor_table(factors, shape[0])
         if table.item(table.argmin()) > 0.0 and table.item(table.argmax()) < math.inf:
             values.update(zip(arrays, table, strict=True))
-            return True
-    for (name, magnitude), factor, (low, high) in zip(arrays.items(), factors, spans, strict=True):
+            return shape
+    for (name, magnitude), factor in zip(arrays.items(), factors, strict=True):
+        low, high = plan[name].span
         if magnitude.shape != shape or not 0 < magnitude.size <= BLOCK:
-            return False
+            return None
         si = magnitude * factor
         if not (low < si.item(si.argmin()) and si.item(si.argmax()) < high):
-            return False
+            return None
         values[name] = si
-    return True
+    return shape
 
 
 def full(result: Any, shape: tuple[int, ...]) -> Any:

@@ -193,7 +193,7 @@ class KindReader:
         self._check_dimension(units, registry, given)
         try:
             zero, one = (float(registry.convert(x, units, self.kind.si)) for x in (0, 1))
-        except pint.PintError as error:
+        except (pint.PintError, ArithmeticError) as error:
             raise Problem(UnitsError, self.kind.name, _shown(given), str(error)) from None
         if zero != 0.0:
             if not self.kind.measured_from_zero:

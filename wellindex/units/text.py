@@ -92,9 +92,11 @@ class _Grammar:
     def _number(self, value: str) -> str:
         if float(value) == float("inf"):
             raise _refuse(self.text, "the number is too large")
-        if float(value) == 0.0 and self.before not in ("start", "sign"):
-            raise _refuse(self.text, "zero cannot be a factor or divisor of a unit")
-        if self.before in ("start", "sign", "operator", "open"):
+        if self.before in ("start", "sign"):
+            return "number"
+        if self.before in ("operator", "open"):
+            if value != "1":
+                raise _refuse(self.text, "a number other than 1 stands within the unit")
             return "number"
         if value == "1" and self.before == "number":
             return "one"
