@@ -77,7 +77,7 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
                 if known is None or known[0] is not value._units:
                     return careful(given)
                 magnitude = value._magnitude
-                if magnitude.__class__ is float:
+                if magnitude.__class__ is float or magnitude.__class__ is int:
                     si = magnitude * known[1]
                     if not span[0] < si < span[1]:
                         return careful(given)
