@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
-from typing import Any, Self
+from typing import Any, TypedDict, Unpack
 
 import numpy as np
 
@@ -27,6 +27,41 @@ _DIMENSIONS: dict[str, _Dimension] = {
     "gravity": {"[length]": 1.0, "[time]": -2.0},
     "length": kinds.LENGTH.dimension,
 }
+
+
+class Contents(TypedDict, total=False):
+    """What a number may contain besides the well index."""
+
+    viscosity: Quantity | str
+    relative_permeability: Any
+    formation_volume_factor: Any
+    density: Quantity | str
+    length: Quantity | str
+
+
+@reads
+def convention(
+    *,
+    wi: kinds.WellIndex | None = None,
+    number: kinds.Number | None = None,
+    viscosity: kinds.Viscosity | None = None,
+    relative_permeability: kinds.Fraction = 1.0,
+    formation_volume_factor: kinds.LiquidVolumeFactor | None = None,
+    density: kinds.Density | None = None,
+    length: kinds.Length | None = None,
+) -> dict[str, Any]:
+    """Read what a conversion is given, in SI."""
+    return {
+        "wi": wi,
+        "number": number,
+        "two_pi": 2.0 * math.pi,
+        "viscosity": viscosity,
+        "relative_permeability": relative_permeability,
+        "formation_volume_factor": formation_volume_factor,
+        "density": density,
+        "gravity": STANDARD_GRAVITY,
+        "length": length,
+    }
 
 
 @dataclass(frozen=True)
@@ -127,17 +162,7 @@ class Convention:
         parts.append("per length" if self.per_length else "the whole open length")
         return ", ".join(parts)
 
-    @reads
-    def number(
-        self,
-        wi: kinds.WellIndex,
-        *,
-        viscosity: kinds.Viscosity | None = None,
-        relative_permeability: kinds.Fraction = 1.0,
-        formation_volume_factor: kinds.LiquidVolumeFactor | None = None,
-        density: kinds.Density | None = None,
-        length: kinds.Length | None = None,
-    ) -> Any:
+    def number(self, wi: Quantity | str, **data: Unpack[Contents]) -> Any:
         """Return a well index of this package as a plain number in this convention.
 
         Parameters
@@ -146,7 +171,7 @@ class Convention:
             As `well_index` and ``Couplings.wi`` give it.
         viscosity, formation_volume_factor, density, length : Quantity or str, optional
             What the number contains and the well index does not; needed only then.
-        relative_permeability : float
+        relative_permeability : float, optional
             Counts where the number contains the viscosity; default 1.
 
         Returns
@@ -159,27 +184,17 @@ class Convention:
         UnitsError
             Something that the number contains is not given; the message says what.
         """
-        data = _data(viscosity, relative_permeability, formation_volume_factor, density, length)
-        return wi * self._factor(self._powers(), data) / _si_value(self.unit)
+        given = convention(wi=wi, **data)
+        return given["wi"] * self._factor(self._powers(), given) / _si_value(self.unit)
 
-    @reads
-    def well_index(
-        self,
-        number: kinds.Number,
-        *,
-        viscosity: kinds.Viscosity | None = None,
-        relative_permeability: kinds.Fraction = 1.0,
-        formation_volume_factor: kinds.LiquidVolumeFactor | None = None,
-        density: kinds.Density | None = None,
-        length: kinds.Length | None = None,
-    ) -> Quantity:
+    def well_index(self, number: Any, **data: Unpack[Contents]) -> Quantity:
         """Return the well index of this package behind a number in this convention.
 
         Parameters
         ----------
         number : float or array
             The number, in `unit`.
-        viscosity, relative_permeability, formation_volume_factor, density, length
+        **data
             As for `number`.
 
         Returns
@@ -193,23 +208,12 @@ class Convention:
         DomainError
             A relative permeability of zero, which no number can be divided by.
         """
-        data = _data(viscosity, relative_permeability, formation_volume_factor, density, length)
+        given = convention(number=number, **data)
         powers = {name: -power for name, power in self._powers().items()}
-        si = number * _si_value(self.unit) * self._factor(powers, data)
+        si = given["number"] * _si_value(self.unit) * self._factor(powers, given)
         return as_quantity(kinds.WELL_INDEX, si)
 
-    @reads
-    def convert(
-        self,
-        number: kinds.Number,
-        to: Self,
-        *,
-        viscosity: kinds.Viscosity | None = None,
-        relative_permeability: kinds.Fraction = 1.0,
-        formation_volume_factor: kinds.LiquidVolumeFactor | None = None,
-        density: kinds.Density | None = None,
-        length: kinds.Length | None = None,
-    ) -> Any:
+    def convert(self, number: Any, to: Convention, **data: Unpack[Contents]) -> Any:
         """Return a number of this convention as one of another.
 
         Parameters
@@ -218,7 +222,7 @@ class Convention:
             In this convention's unit.
         to : Convention
             The other convention.
-        viscosity, relative_permeability, formation_volume_factor, density, length
+        **data
             As for `number`; needed only where one of the two contains it and the other does not.
 
         Returns
@@ -232,10 +236,11 @@ class Convention:
         """
         if not isinstance(to, Convention):
             raise UnitsError(f"convert(): to is a Convention, not {type(to).__name__}")
-        data = _data(viscosity, relative_permeability, formation_volume_factor, density, length)
+        given = convention(number=number, **data)
         ours = self._powers()
         powers = {name: power - ours[name] for name, power in to._powers().items()}
-        return number * _si_value(self.unit) * self._factor(powers, data) / _si_value(to.unit)
+        si = given["number"] * _si_value(self.unit) * self._factor(powers, given)
+        return si / _si_value(to.unit)
 
     def _factor(self, powers: dict[str, float], data: dict[str, Any]) -> Any:
         missing = [name for name, power in powers.items() if power and data[name] is None]
@@ -251,20 +256,6 @@ class Convention:
             if power:
                 factor = factor * data[name] ** power
         return factor
-
-
-def _data(
-    viscosity: Any, relative_permeability: Any, volume_factor: Any, density: Any, length: Any
-) -> dict[str, Any]:
-    return {
-        "two_pi": 2.0 * math.pi,
-        "viscosity": viscosity,
-        "relative_permeability": relative_permeability,
-        "formation_volume_factor": volume_factor,
-        "density": density,
-        "gravity": STANDARD_GRAVITY,
-        "length": length,
-    }
 
 
 def _si_value(unit: str) -> float:

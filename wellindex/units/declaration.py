@@ -36,8 +36,6 @@ def _reader(kind: Kind | Either) -> KindReader:
 
 
 def _parameter(name: str, annotation: Any) -> Parameter:
-    if annotation is typing.Self:
-        return Parameter(name, None, (), (), False)
     options = [annotation]
     if get_origin(annotation) in (typing.Union, types.UnionType):
         options = list(get_args(annotation))
