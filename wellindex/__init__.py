@@ -24,6 +24,7 @@ from wellindex.radius.closed_form import equivalent_radius, equivalent_wellbore_
 from wellindex.rock import Permeability, permeability_from_conductivity
 from wellindex.space.grid import TensorGrid
 from wellindex.space.path import Path
+from wellindex.space.survey import Survey
 from wellindex.state import WellState
 from wellindex.units.other_registries import define_units
 from wellindex.units.registry import Quantity, ureg
@@ -47,6 +48,7 @@ __all__ = [
     "Quantity",
     "RadialProfile",
     "ShapeError",
+    "Survey",
     "TensorGrid",
     "UnitsError",
     "Well",

@@ -3,90 +3,137 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from itertools import pairwise
 from typing import Any, NamedTuple
 
 import numpy as np
 
 from wellindex.space.grid import TensorGrid
+from wellindex.space.hexahedral import HexahedralGrid
+from wellindex.space.hexahedral_crossing import hexahedral_pieces
+from wellindex.space.intervals import open_intervals
 from wellindex.space.path import Path
+from wellindex.space.pieces import SLIVER, Pieces
+from wellindex.space.tensor_crossing import tensor_pieces
+from wellindex.units import kinds
+from wellindex.units.answers import as_quantity
+from wellindex.units.boundary import reads
+from wellindex.units.registry import Quantity
 
 Array = np.ndarray[Any, Any]
-
-#: Pieces shorter than this part of a leg are rounding at an edge of the grid.
-_SLIVER = 1e-12
-#: A coordinate nearer to a face than this part of the grid's largest is on the face.
-_ON_FACE = 1e-12
+Grid = TensorGrid | HexahedralGrid
 
 
-class Crossings(NamedTuple):
+class Rows(NamedTuple):
     """One row per visit of a block by one interval, in order along the path; SI."""
 
     cell: Array
     interval: Array
     md_in: Array
     md_out: Array
-    length: Array
+    entry: Array
+    exit: Array
     components: Array
     midpoint: Array
 
-
-def onto_faces(x: Array, faces: Array) -> Array:
-    """Move coordinates that miss a face of the grid by rounding alone onto it."""
-    right = np.clip(np.searchsorted(faces, x), 1, len(faces) - 1)
-    left, right = faces[right - 1], faces[right]
-    nearest = np.where(x - left < right - x, left, right)
-    return np.where(np.abs(x - nearest) <= _ON_FACE * np.abs(faces).max(), nearest, x)
+    @property
+    def length(self) -> Array:
+        """Length of each visit along the path."""
+        length: Array = self.md_out - self.md_in
+        return length
 
 
-def _pieces(start: Array, stop: Array, edges: tuple[Array, ...]) -> Array:
-    """Return the fractions along a leg at which it passes a face of the grid, with 0 and 1."""
-    fractions = [np.array([0.0, 1.0])]
-    for a, b, faces in zip(start, stop, edges, strict=True):
-        if a != b:
-            first, last = np.searchsorted(faces, (min(a, b), max(a, b)))
-            fractions.append((faces[first:last] - a) / (b - a))
-    cuts = np.unique(np.clip(np.concatenate(fractions), 0.0, 1.0))
-    keep = np.concatenate(([True], np.diff(cuts) > _SLIVER))
-    cuts = cuts[keep]
-    cuts[-1] = 1.0
-    return cuts
+class Crossings:
+    """The blocks that the open intervals of a path cross, in order along it.
 
+    `cross` makes them. Lengths are measured along the path (along the arcs of a survey).
 
-def _cells(points: Array, edges: tuple[Array, ...]) -> Array:
-    """Return the block of each point, (n, 3); -1 outside.
-
-    A point on a face belongs to the block on its east, north or lower side; on the last face of
-    the grid, to the last block.
+    Attributes
+    ----------
+    cell : array of int, (n, 3)
+        Block indices (i, j, k) from 0; one row per visit and interval.
+    interval : array of int, (n,)
+        The interval that the row belongs to, from 0.
+    overlaps : list of tuple
+        Where cells overlap (faults), (measured depth from, to, the other cell): the length counts
+        once, for the row's cell.
     """
-    cells = np.empty(points.shape, dtype=np.int64)
-    for axis, faces in enumerate(edges):
-        x = points[:, axis]
-        index = np.searchsorted(faces, x, side="right") - 1
-        index[x == faces[-1]] = len(faces) - 2
-        index[(x < faces[0]) | (x > faces[-1])] = -1
-        cells[:, axis] = index
-    return cells
 
+    def __init__(
+        self,
+        rows: Rows,
+        gaps: list[tuple[float, float]],
+        overlaps: list[tuple[float, float, tuple[int, ...]]],
+    ) -> None:
+        self._rows = rows
+        self._gaps = gaps
+        self._overlaps = overlaps
 
-def _leg_rows(start: Array, stop: Array, grid: TensorGrid) -> tuple[Array, Array, Array]:
-    """Return cell, and fractions in and out, of the pieces of one leg that lie in blocks."""
-    ends = np.stack((start, stop), axis=1)
-    start, stop = np.array([onto_faces(*each) for each in zip(ends, grid.edges(), strict=True)]).T
-    cuts = _pieces(start, stop, grid.edges())
-    middle = 0.5 * (cuts[1:] + cuts[:-1])
-    # A coordinate that does not change is taken as it is: rounding must not move it off a face.
-    points = np.where(start == stop, start, start + middle[:, np.newaxis] * (stop - start))
-    cells = _cells(points, grid.edges())
-    inside = np.all(cells >= 0, axis=1)
-    inside[inside] = grid.exists(cells[inside])
-    return cells[inside], cuts[:-1][inside], cuts[1:][inside]
+    def __len__(self) -> int:
+        return len(self._rows.md_in)
 
+    @property
+    def cell(self) -> Array:
+        """Block indices (i, j, k) from 0, (n, 3)."""
+        return self._rows.cell.copy()
 
-def _position(path: Path, md: float) -> Array:
-    points, depths = path.in_si()
-    return np.array([np.interp(md, depths, points[:, axis]) for axis in range(3)])
+    @property
+    def interval(self) -> Array:
+        """The interval that each row belongs to, from 0, (n,)."""
+        return self._rows.interval.copy()
+
+    @property
+    def md_in(self) -> Quantity:
+        """Measured depth where the path enters the block, (n,)."""
+        return as_quantity(kinds.COORDINATE, self._rows.md_in)
+
+    @property
+    def md_out(self) -> Quantity:
+        """Measured depth where the path leaves the block, (n,)."""
+        return as_quantity(kinds.COORDINATE, self._rows.md_out)
+
+    @property
+    def length(self) -> Quantity:
+        """Length along the path in the block, (n,)."""
+        return as_quantity(kinds.LENGTH, self._rows.length)
+
+    @property
+    def entry(self) -> Quantity:
+        """Point where the path enters the block, (n, 3)."""
+        return as_quantity(kinds.COORDINATE, self._rows.entry)
+
+    @property
+    def exit(self) -> Quantity:
+        """Point where the path leaves the block, (n, 3)."""
+        return as_quantity(kinds.COORDINATE, self._rows.exit)
+
+    @property
+    def vector(self) -> Quantity:
+        """From entry to exit, (n, 3)."""
+        return as_quantity(kinds.COORDINATE, self._rows.exit - self._rows.entry)
+
+    @property
+    def gaps(self) -> Quantity:
+        """Stretches between two visits that lie in no cell (faults, absent cells), (m, 2)."""
+        return as_quantity(kinds.COORDINATE, np.array(self._gaps).reshape(-1, 2))
+
+    @property
+    def overlaps(self) -> list[tuple[Quantity, Quantity, tuple[int, ...]]]:
+        """Stretches that another cell claims too: measured depth from, to, that cell."""
+        return [
+            (as_quantity(kinds.COORDINATE, a), as_quantity(kinds.COORDINATE, b), cell)
+            for a, b, cell in self._overlaps
+        ]
+
+    def in_si(self) -> Rows:
+        """Return the rows as plain arrays in SI."""
+        return self._rows
+
+    def __repr__(self) -> str:
+        return (
+            f"Crossings({len(self)} rows, {len(self._gaps)} gaps, {len(self._overlaps)} overlaps)"
+        )
 
 
 @dataclass
@@ -97,7 +144,8 @@ class _Visit:
     interval: int
     md_in: float
     md_out: float
-    length: float
+    entry: Array
+    exit: Array
     components: Array
     moment: Array
 
@@ -105,65 +153,147 @@ class _Visit:
         """Tell whether `later` is the same stretch, cut at a point of the path."""
         gap = later.md_in - self.md_out
         alike = (self.cell, self.interval) == (later.cell, later.interval)
-        return alike and gap <= _SLIVER * max(abs(self.md_out), 1.0)
+        return alike and gap <= _same(self.md_out)
 
     def extend(self, later: _Visit) -> None:
         """Take in a stretch that continues this one."""
         self.md_out = later.md_out
-        self.length += later.length
+        self.exit = later.exit
         self.components += later.components
         self.moment += later.moment
 
 
-def crossings(path: Path, grid: TensorGrid, intervals: Array) -> Crossings:
-    """Follow the open intervals of a path through a tensor grid.
+def _same(md: float) -> float:
+    return SLIVER * max(abs(md), 1.0)
 
-    `intervals` holds measured depths in SI, (n, 2), in order. Pieces of one interval in one block
-    are one row as long as the path does not leave the block between them.
-    """
+
+@dataclass
+class _Followed:
+    """What following the intervals has found so far."""
+
+    visits: list[_Visit] = field(default_factory=list)
+    overlaps: list[tuple[float, float, tuple[int, ...]]] = field(default_factory=list)
+
+    def add(self, visit: _Visit) -> None:
+        """Add a stretch, or lengthen the last one by it."""
+        if self.visits and self.visits[-1].continues(visit):
+            self.visits[-1].extend(visit)
+        else:
+            self.visits.append(visit)
+
+    def gaps(self) -> list[tuple[float, float]]:
+        """Return the stretches of an interval between visits that lie in no cell."""
+        return [
+            (one.md_out, other.md_in)
+            for one, other in pairwise(self.visits)
+            if one.interval == other.interval and other.md_in - one.md_out > _same(one.md_out)
+        ]
+
+
+def _pieces_of(grid: Grid, start: Array, stop: Array) -> Pieces:
+    if isinstance(grid, TensorGrid):
+        return tensor_pieces(start, stop, grid)
+    return hexahedral_pieces(start, stop, grid)
+
+
+def crossings(path: Path, grid: Grid, intervals: Array) -> Crossings:
+    """Follow the open intervals of a path, in SI and in order, through a grid."""
     _points, depths = path.in_si()
-    visits: list[_Visit] = []
+    found = _Followed()
     for number, (top, bottom) in enumerate(intervals):
         stations = np.concatenate(([top], depths[(depths > top) & (depths < bottom)], [bottom]))
-        for leg in pairwise(stations.tolist()):
-            for visit in _leg_visits(path, grid, number, leg):
-                if visits and visits[-1].continues(visit):
-                    visits[-1].extend(visit)
-                else:
-                    visits.append(visit)
-    return _collect(visits)
+        places = path.at(stations)
+        legs = zip(pairwise(stations.tolist()), pairwise(places), strict=True)
+        for (md_a, md_b), (start, stop) in legs:
+            pieces = _pieces_of(grid, start, stop)
+            size = md_b - md_a
+            for visit in _visits(pieces, grid, number, md_a, size, start, stop):
+                found.add(visit)
+            found.overlaps += [(md_a + i * size, md_a + o * size, c) for i, o, c in pieces.also]
+    return Crossings(_rows(found.visits), found.gaps(), found.overlaps)
 
 
-def _leg_visits(
-    path: Path, grid: TensorGrid, number: int, leg: tuple[float, float]
+def _visits(
+    pieces: Pieces,
+    grid: Grid,
+    number: int,
+    md: float,
+    size: float,
+    start: Array,
+    stop: Array,
 ) -> Iterator[_Visit]:
-    start, stop = _position(path, leg[0]), _position(path, leg[1])
-    size = leg[1] - leg[0]
-    for cell, into, out in zip(*_leg_rows(start, stop, grid), strict=True):
-        length = (out - into) * size
+    into, out = pieces.into[:, np.newaxis], pieces.out[:, np.newaxis]
+    entry, leave = start + into * (stop - start), start + out * (stop - start)
+    components = grid.components(pieces.cell, leave - entry)
+    for n, cell in enumerate(pieces.cell.tolist()):
+        md_in, md_out = md + pieces.into[n] * size, md + pieces.out[n] * size
         yield _Visit(
-            cell=tuple(cell.tolist()),
+            cell=tuple(cell),
             interval=number,
-            md_in=leg[0] + into * size,
-            md_out=leg[0] + out * size,
-            length=length,
-            components=np.abs(stop - start) * (out - into),
-            moment=length * (start + 0.5 * (into + out) * (stop - start)),
+            md_in=md_in,
+            md_out=md_out,
+            entry=entry[n],
+            exit=leave[n],
+            components=components[n],
+            moment=0.5 * (md_out - md_in) * (entry[n] + leave[n]),
         )
 
 
-def _collect(visits: list[_Visit]) -> Crossings:
+def _rows(visits: list[_Visit]) -> Rows:
     def column(name: str, *shape: int) -> Array:
         values = [getattr(visit, name) for visit in visits]
         return np.array(values, dtype=float).reshape(len(visits), *shape)
 
-    length = column("length")
-    return Crossings(
+    md_in, md_out = column("md_in"), column("md_out")
+    return Rows(
         cell=column("cell", 3).astype(np.int64),
         interval=column("interval").astype(np.int64),
-        md_in=column("md_in"),
-        md_out=column("md_out"),
-        length=length,
+        md_in=md_in,
+        md_out=md_out,
+        entry=column("entry", 3),
+        exit=column("exit", 3),
         components=column("components", 3),
-        midpoint=column("moment", 3) / length[:, np.newaxis],
+        midpoint=column("moment", 3) / (md_out - md_in)[:, np.newaxis],
     )
+
+
+@reads
+def cross(
+    path: Path,
+    grid: TensorGrid | HexahedralGrid,
+    intervals: kinds.Coordinate | None = None,
+) -> Crossings:
+    """Find every block that the open intervals of a path cross.
+
+    Parameters
+    ----------
+    path : Path
+        The well's path; of a `Survey`, ``survey.path``.
+    grid : TensorGrid or HexahedralGrid
+        The blocks.
+    intervals : list of pairs or Quantity, length, (m, 2), optional
+        Open intervals in measured depth, in order along the path; default the whole path.
+
+    Returns
+    -------
+    Crossings
+        One row per visit of a block and interval. A path on a face or an edge counts once: for
+        the block on its east, north or lower side.
+
+    Raises
+    ------
+    UnitsError, ShapeError
+        A missing or wrong unit; intervals that are no pairs.
+    DomainError
+        An interval outside the path, one that does not run downwards along it, or two that
+        overlap.
+
+    Examples
+    --------
+    >>> from wellindex import Path, TensorGrid, cross
+    >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, ["5 m", "8 m"])
+    >>> found = cross(Path([("50 m", "50 m", "0 m"), ("150 m", "50 m", "10 m")]), grid)
+    >>> found.cell.tolist()
+    [[0, 0, 0], [1, 0, 1]]
+    """
+    return crossings(path, grid, open_intervals(path, intervals))

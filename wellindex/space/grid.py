@@ -142,6 +142,10 @@ class TensorGrid:
         """Return dx, dy, dz of some cells in SI, (3, n)."""
         return np.stack([size[i] for size, i in zip(self._sizes, cells.T, strict=True)])
 
+    def components(self, cells: np.ndarray[Any, Any], vectors: np.ndarray[Any, Any]) -> Any:
+        """Return the lengths of vectors (n, 3) along the axes of their cells, (n, 3)."""
+        return np.abs(vectors)
+
     def edges(self) -> tuple[np.ndarray[Any, Any], ...]:
         """Return the coordinates of the block faces along x, y and z in SI."""
         return self._edges

@@ -21,8 +21,9 @@ class Path:
     points : Quantity, length, (n, 3), or a list of points
         x east, y north, z down; at least two points, in order along the well. A point is a tuple
         of three quantities or texts.
-    measured_depth : Quantity or str, length
-        Measured depth at the first point; default zero.
+    measured_depth : Quantity or str, length, scalar or (n,)
+        Measured depth at the first point (default zero), the others following along the legs; or
+        at every point, increasing, where the legs stand for arcs.
 
     Raises
     ------
@@ -51,7 +52,23 @@ class Path:
         if same.size:
             raise DomainError(f"Path(): points {same[0]} and {same[0] + 1} are the same")
         self._points = points
-        self._md = measured_depth + np.concatenate(([0.0], np.cumsum(legs)))
+        if np.ndim(measured_depth):
+            self._md = self._given_depths(measured_depth)
+        else:
+            self._md = measured_depth + np.concatenate(([0.0], np.cumsum(legs)))
+
+    def _given_depths(self, depths: np.ndarray[Any, Any]) -> np.ndarray[Any, Any]:
+        if depths.shape != (len(self._points),):
+            raise ShapeError(
+                f"Path(): measured_depth is one value, or one per point ({len(self._points)}); "
+                f"got {depths.shape}"
+            )
+        wrong = np.flatnonzero(np.diff(depths) <= 0.0)
+        if wrong.size:
+            raise DomainError(
+                f"Path(): measured depth must increase; points {wrong[0]} and {wrong[0] + 1} do not"
+            )
+        return depths
 
     @property
     def points(self) -> Quantity:
@@ -71,6 +88,10 @@ class Path:
     def in_si(self) -> tuple[np.ndarray[Any, Any], np.ndarray[Any, Any]]:
         """Return points (n, 3) and measured depths (n,) in SI."""
         return self._points, self._md
+
+    def at(self, depths: np.ndarray[Any, Any]) -> np.ndarray[Any, Any]:
+        """Return the points at measured depths (n,) in SI, (n, 3)."""
+        return np.stack([np.interp(depths, self._md, x) for x in self._points.T], axis=1)
 
     def __repr__(self) -> str:
         return f"Path({len(self._points)} points, {self.length})"

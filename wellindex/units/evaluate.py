@@ -37,7 +37,7 @@ def plan_for(parameter: Parameter) -> Plan:
     if reader is None:
         return Plan({}, (0.0, 0.0), False, False, parameter.choices)
     one_sided = reader.low <= 0.0 and reader.high == math.inf
-    bare = not reader.kind.dimension
+    bare = not reader.kind.dimension and reader.kind.plain is not None
     return Plan(reader.ours, (reader.low, reader.high), one_sided, bare, ())
 
 

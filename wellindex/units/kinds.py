@@ -112,6 +112,7 @@ def _volume_factor(name: str, plain: Range | None) -> Kind:
 
 LENGTH = _length("a length", POSITIVE)
 COORDINATE = _length("a position", ANY)
+VOLUME = Kind("a volume", {"[length]": 3.0}, "meter**3", "m**3", "ft**3", "cm**3")
 PERMEABILITY = Kind("a permeability", {"[length]": 2.0}, "meter**2", "mD", "mD", "D", NON_NEGATIVE)
 VISCOSITY = Kind(
     "a viscosity",
@@ -120,6 +121,25 @@ VISCOSITY = Kind(
     "cP",
     "cP",
     "cP",
+)
+ANGLE = Kind("an angle", {}, "radian", "degree", "degree", "degree", ANY)
+INCLINATION = Kind(
+    "an inclination",
+    {},
+    "radian",
+    "degree",
+    "degree",
+    "degree",
+    Range(_JUST_BELOW_ZERO, math.nextafter(math.pi, 4.0), "between 0 and 180 degrees"),
+)
+CURVATURE = Kind(
+    "a dogleg severity",
+    {"[length]": -1.0},
+    "radian/meter",
+    "degree/m",
+    "degree/ft",
+    "degree/cm",
+    NON_NEGATIVE,
 )
 PRESSURE = _pressure("an absolute or gauge pressure", NON_NEGATIVE, True)
 PRESSURE_DIFFERENCE = _pressure("a pressure difference", ANY, False)
@@ -205,6 +225,8 @@ PRODUCTIVITY_INDEX = Kind(
 # type checker each is Any, while names, defaults and the answer stay checked.
 Length = Annotated[Any, LENGTH]
 Coordinate = Annotated[Any, COORDINATE]
+Angle = Annotated[Any, ANGLE]
+Inclination = Annotated[Any, INCLINATION]
 Permeability = Annotated[Any, PERMEABILITY]
 TensorPermeability = Annotated[
     Any, Kind("a permeability tensor", {"[length]": 2.0}, "meter**2", "mD", "mD", "D", ANY)
