@@ -53,7 +53,7 @@ class Well:
     ------
     UnitsError, DomainError, ShapeError
         A missing or wrong unit; depths that differ and a fluid without density; couplings that
-        are all tight.
+        are all tight; an array that does not fit.
 
     Notes
     -----
@@ -89,6 +89,10 @@ class Well:
             raise ShapeError(
                 f"Well(): relative_permeability is one value, or one per coupling ({count}); "
                 f"got {np.shape(relative_permeability)}"
+            )
+        if np.ndim(reference_depth):
+            raise ShapeError(
+                f"Well(): reference_depth is one value; got {np.shape(reference_depth)}"
             )
         self.couplings = couplings
         self.fluid = fluid

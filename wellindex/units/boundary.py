@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import functools
 import inspect
+import sys
 from collections.abc import Callable
 from typing import Any, Concatenate, ParamSpec, Protocol, TypeVar, cast
 
@@ -16,6 +17,8 @@ from wellindex.units.evaluate import Careful, full, plan_for, scale_arrays
 from wellindex.units.kernel import compile_si
 from wellindex.units.reading import OUR_QUANTITY, Problem
 from wellindex.units.registry import Quantity
+
+LARGEST = sys.float_info.max
 
 P = ParamSpec("P")
 R = TypeVar("R")
@@ -78,7 +81,10 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
                     return careful(given)
                 magnitude = value._magnitude
                 if magnitude.__class__ is float or magnitude.__class__ is int:
-                    si = magnitude * known[1]
+                    try:
+                        si = magnitude * known[1]
+                    except OverflowError:  # an integer beyond all floats
+                        return careful(given)
                     if not span[0] < si < span[1]:
                         return careful(given)
                     values[name] = si
@@ -89,7 +95,7 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
                 else:
                     return careful(given)
             elif bare and (value.__class__ is float or value.__class__ is int):
-                if not span[0] < value < span[1]:
+                if not span[0] < value < span[1] or abs(value) > LARGEST:
                     return careful(given)
                 values[name] = float(value)
             elif value.__class__ is str and value in choices:

@@ -49,7 +49,8 @@ def _parameter(name: str, annotation: Any) -> Parameter:
     if get_origin(first) is Literal and len(options) == 1:
         return Parameter(name, None, get_args(first), (), optional)
     instances = tuple(get_origin(option) or option for option in options)
-    if first is Any or not all(isinstance(option, type) for option in instances):
+    unclear = first is Any or Annotated in instances
+    if unclear or not all(isinstance(option, type) for option in instances):
         raise TypeError(f"argument {name!r} is declared with no kind: {annotation!r}")
     return Parameter(name, None, (), instances, optional)
 
@@ -149,10 +150,10 @@ class Declaration:
 
     def read_si(self, name: str, value: Any) -> Any:
         """Return one argument that is given in SI, without a unit."""
-        reader = self.parameters[name].reader
-        if reader is None or value is None:
+        parameter = self.parameters[name]
+        if parameter.reader is None or (value is None and parameter.optional):
             return self.read(name, value)
-        return reader.read_si(value)
+        return parameter.reader.read_si(value)
 
     def check(self, name: str, value: Any) -> None:
         """Raise `Problem` where an SI value lies outside the range of its kind."""

@@ -9,6 +9,7 @@ from typing import Any, NamedTuple
 import numpy as np
 import pint
 
+from wellindex.errors import DomainError
 from wellindex.units.answers import as_quantity, in_other_registry
 from wellindex.units.checks import AT_ONCE, Tally
 from wellindex.units.declaration import Declaration, Parameter
@@ -161,9 +162,9 @@ class Careful:
         tally = Tally(keep_going=keep_going)
         try:
             result = self._in_blocks(values, arrays, scales, shape, tally)
-        except _OutOfRange:
-            self._read(given, keep_going, whole=True)
-            raise AssertionError from None
+        except (_OutOfRange, DomainError):
+            self._read(given, keep_going, whole=True)  # ranges come before what the formula says
+            raise
         tally.report()
         return result
 

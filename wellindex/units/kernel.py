@@ -41,7 +41,7 @@ def compile_si(body: Callable[..., Any], declaration: Declaration) -> Callable[.
     passed = ", ".join(f"{name}={name}" for name in names)
     source = (
         f"def si(*, {', '.join(arguments)}):\n"
-        f"    if {' and '.join(conditions)}:\n"
+        f"    if {' and '.join(conditions) or 'True'}:\n"
         f"        return _body(_check, {passed})\n"
         f"    return _general(dict({passed}))\n"
     )
@@ -54,6 +54,7 @@ def compile_si(body: Callable[..., Any], declaration: Declaration) -> Callable[.
         return full(result, shape) if shape is not None else result
 
     namespace: dict[str, Any] = {
+        "__name__": __name__,
         "_body": body,
         "_check": AT_ONCE,
         "_defaults": declaration.defaults,

@@ -286,8 +286,3 @@ def _floats(value: Any, kind: Kind, given: Any) -> Any:
         raise refused(f"an array of real numbers is needed, not of {array.dtype}")
     floats = array.astype(np.float64, copy=False)
     return float(floats) if floats.ndim == 0 else floats
-
-
-def is_foreign(value: Any) -> bool:
-    """Tell whether `value` is a quantity of another registry."""
-    return isinstance(value, pint.Quantity) and type(value) is not OUR_QUANTITY
