@@ -90,9 +90,9 @@ class Well:
                 f"Well(): relative_permeability is one value, or one per coupling ({count}); "
                 f"got {np.shape(relative_permeability)}"
             )
-        if np.ndim(reference_depth):
+        if isinstance(reference_depth, np.ndarray):
             raise ShapeError(
-                f"Well(): reference_depth is one value; got {np.shape(reference_depth)}"
+                f"Well(): reference_depth is one value; got {reference_depth.shape}"
             )
         self.couplings = couplings
         self.fluid = fluid

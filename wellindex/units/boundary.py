@@ -117,7 +117,7 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
         return as_quantity(answer, result)
 
     formula.__signature__ = declaration.signature  # type: ignore[attr-defined]
-    formula.si = compile_si(body, declaration)  # type: ignore[attr-defined]
+    formula.si = compile_si(careful)  # type: ignore[attr-defined]
     return cast("Formula[P]", formula)
 
 

@@ -18,6 +18,7 @@ from wellindex.units.systems import STANDARD_ATMOSPHERE, current
 
 OUR_QUANTITY = ureg.Quantity
 BARREL = 0.158987294928
+ANGLES = frozenset({"radian", "degree"})
 _REMEMBERED = 1024
 _OWN_ZERO = "its unit has a zero of its own: write one without"
 _NEVER_NUMBERS = (numbers.Complex, str, bytes, dict, set, pint.Quantity)
@@ -211,6 +212,9 @@ class KindReader:
             raise Problem(UnitsError, self.kind.name, _shown(given), str(error)) from None
         if dimension != self.kind.dimension:
             raise _wrong_dimension(self.kind, units, _shown(given))
+        if not self.kind.dimension and ANGLES & set(dict(units)):
+            remedy = "an angle is not what is meant here"
+            raise Problem(UnitsError, self.kind.name, _shown(given), remedy)
         if registry is not ureg:
             _check_names(self.kind, units, registry, _shown(given))
         _check_zero(self.kind, units, _shown(given))
