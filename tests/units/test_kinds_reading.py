@@ -13,7 +13,15 @@ import pytest
 
 from tests.oracles.closed_form import in_si
 from tests.units import sample_formulas as sample
-from wellindex import DomainError, ShapeError, UnitsError, set_unit_system, unit_system, ureg
+from wellindex import (
+    DomainError,
+    ShapeError,
+    UnitsError,
+    set_unit_system,
+    unit_system,
+    ureg,
+    well_index,
+)
 from wellindex.units.kinds import RESERVOIR_RATE, SURFACE_RATE
 
 close = partial(pytest.approx, abs=0, rel=1e-14)
