@@ -91,9 +91,7 @@ class Well:
                 f"got {np.shape(relative_permeability)}"
             )
         if isinstance(reference_depth, np.ndarray):
-            raise ShapeError(
-                f"Well(): reference_depth is one value; got {reference_depth.shape}"
-            )
+            raise ShapeError(f"Well(): reference_depth is one value; got {reference_depth.shape}")
         self.couplings = couplings
         self.fluid = fluid
         self.role = role

@@ -124,6 +124,8 @@ def crossings(path: Path, grid: TensorGrid, intervals: Array) -> Crossings:
     _points, depths = path.in_si()
     visits: list[_Visit] = []
     for number, (top, bottom) in enumerate(intervals):
+        if not top < bottom:
+            continue
         stations = np.concatenate(([top], depths[(depths > top) & (depths < bottom)], [bottom]))
         for leg in pairwise(stations.tolist()):
             for visit in _leg_visits(path, grid, number, leg):

@@ -15,6 +15,7 @@ from wellindex.units.checks import AT_ONCE, Checks, Tally
 from wellindex.units.declaration import Declaration
 from wellindex.units.evaluate import Careful, full, plan_for, scale_arrays
 from wellindex.units.kernel import compile_si
+from wellindex.units.kinds import Given, plain
 from wellindex.units.reading import OUR_QUANTITY, Problem
 from wellindex.units.registry import Quantity
 
@@ -156,7 +157,7 @@ def _read_all(declaration: Declaration, given: dict[str, Any]) -> dict[str, Any]
     for name, value in given.items():
         try:
             values[name] = declaration.read(name, value)
-            if keep_going and isinstance(values[name], np.ndarray):
+            if keep_going and isinstance(plain(values[name]), np.ndarray):
                 values[name] = _without_bad(declaration, name, values[name], tally)
             else:
                 declaration.check(name, values[name])
@@ -173,6 +174,8 @@ def _without_bad(declaration: Declaration, name: str, value: Any, tally: Tally) 
     bad = None if reader is None else reader.check(value)
     if bad is None:
         return value
-    tally.start(0, value.shape, value.size)
+    array = plain(value)
+    tally.start(0, array.shape, array.size)
     tally.refuse(np.ravel(bad.mask), f"{name} {bad.reason}")
-    return np.where(bad.mask, np.nan, value)
+    marked = np.where(bad.mask, np.nan, array)
+    return Given(marked, value.kind) if isinstance(value, Given) else marked

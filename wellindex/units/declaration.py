@@ -12,7 +12,7 @@ import numpy as np
 
 from wellindex.errors import ArgumentsError, DomainError, ShapeError, UnitsError, WellIndexError
 from wellindex.units.checks import place
-from wellindex.units.kinds import Either, Kind
+from wellindex.units.kinds import Either, Kind, plain
 from wellindex.units.reading import EitherReader, KindReader, Problem
 
 _readers: dict[int, KindReader] = {}
@@ -168,7 +168,7 @@ class Declaration:
         """Say what is out of range: needed, given, remedy."""
         reader = self.parameters[name].reader
         assert reader is not None
-        value = getattr(value, "value", value)
+        value = plain(value)
         flat = int(np.argmax(bad.mask))
         number = float(np.ravel(value)[flat])
         unit = "" if reader.kind.si == "dimensionless" else f" {reader.kind.si}"
