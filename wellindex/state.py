@@ -59,7 +59,7 @@ class WellState:
 
     @property
     def role(self) -> str:
-        """What the well is for: "producer" or "injector"."""
+        """The role of the well, "producer" or "injector"."""
         return self.basis.role
 
     @property
@@ -115,7 +115,7 @@ class WellState:
 
     @property
     def well_backflow(self) -> Any:
-        """Whether the whole well flows against its role: a bool, or an array of them."""
+        """Whether the whole well flows against its role, a bool or an array of them."""
         against = np.asarray(self._total * self._against > 0.0)
         return bool(against) if against.ndim == 0 else against
 

@@ -53,7 +53,7 @@ class Well:
     ------
     UnitsError, DomainError, ShapeError
         A missing or wrong unit; depths that differ and a fluid without density; couplings that
-        are all tight.
+        are all tight; an array that does not fit.
 
     Notes
     -----
@@ -90,6 +90,8 @@ class Well:
                 f"Well(): relative_permeability is one value, or one per coupling ({count}); "
                 f"got {np.shape(relative_permeability)}"
             )
+        if isinstance(reference_depth, np.ndarray):
+            raise ShapeError(f"Well(): reference_depth is one value; got {reference_depth.shape}")
         self.couplings = couplings
         self.fluid = fluid
         self.role = role

@@ -201,6 +201,8 @@ def crossings(path: Path, grid: Grid, intervals: Array) -> Crossings:
     _points, depths = path.in_si()
     found = _Followed()
     for number, (top, bottom) in enumerate(intervals):
+        if not top < bottom:
+            continue
         stations = np.concatenate(([top], depths[(depths > top) & (depths < bottom)], [bottom]))
         places = path.at(stations)
         legs = zip(pairwise(stations.tolist()), pairwise(places), strict=True)

@@ -51,7 +51,9 @@ def as_quantity(kind: Kind, value: Any, system: SystemName | None = None) -> Qua
 def number_in(kind: Kind, value: Any, system: SystemName | None = None) -> tuple[Any, str]:
     """Return an SI value as a plain number, and the unit it is in."""
     name = system or current().name
-    return as_quantity(kind, value, name).magnitude, kind.unit(name)
+    answer = as_quantity(kind, value, name)
+    # The si units are spelled for every registry; a header wants their symbols.
+    return answer.magnitude, f"{answer.units:~C}" if name == "si" else kind.unit(name)
 
 
 def in_other_registry(kind: Kind, value: Any, registry: Any) -> Any:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import functools
 import inspect
+import sys
 from collections.abc import Callable
 from typing import Any, Concatenate, ParamSpec, Protocol, TypeVar, cast
 
@@ -14,8 +15,11 @@ from wellindex.units.checks import AT_ONCE, Checks, Tally
 from wellindex.units.declaration import Declaration
 from wellindex.units.evaluate import Careful, full, plan_for, scale_arrays
 from wellindex.units.kernel import compile_si
+from wellindex.units.kinds import Given, plain
 from wellindex.units.reading import OUR_QUANTITY, Problem
 from wellindex.units.registry import Quantity
+
+LARGEST = sys.float_info.max
 
 P = ParamSpec("P")
 R = TypeVar("R")
@@ -78,7 +82,10 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
                     return careful(given)
                 magnitude = value._magnitude
                 if magnitude.__class__ is float or magnitude.__class__ is int:
-                    si = magnitude * known[1]
+                    try:
+                        si = magnitude * known[1]
+                    except OverflowError:  # an integer beyond all floats
+                        return careful(given)
                     if not span[0] < si < span[1]:
                         return careful(given)
                     values[name] = si
@@ -89,7 +96,7 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
                 else:
                     return careful(given)
             elif bare and (value.__class__ is float or value.__class__ is int):
-                if not span[0] < value < span[1]:
+                if not span[0] < value < span[1] or abs(value) > LARGEST:
                     return careful(given)
                 values[name] = float(value)
             elif value.__class__ is str and value in choices:
@@ -111,7 +118,7 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
         return as_quantity(answer, result)
 
     formula.__signature__ = declaration.signature  # type: ignore[attr-defined]
-    formula.si = compile_si(body, declaration)  # type: ignore[attr-defined]
+    formula.si = compile_si(careful)  # type: ignore[attr-defined]
     return cast("Formula[P]", formula)
 
 
@@ -150,7 +157,7 @@ def _read_all(declaration: Declaration, given: dict[str, Any]) -> dict[str, Any]
     for name, value in given.items():
         try:
             values[name] = declaration.read(name, value)
-            if keep_going and isinstance(values[name], np.ndarray):
+            if keep_going and isinstance(plain(values[name]), np.ndarray):
                 values[name] = _without_bad(declaration, name, values[name], tally)
             else:
                 declaration.check(name, values[name])
@@ -167,6 +174,8 @@ def _without_bad(declaration: Declaration, name: str, value: Any, tally: Tally) 
     bad = None if reader is None else reader.check(value)
     if bad is None:
         return value
-    tally.start(0, value.shape, value.size)
+    array = plain(value)
+    tally.start(0, array.shape, array.size)
     tally.refuse(np.ravel(bad.mask), f"{name} {bad.reason}")
-    return np.where(bad.mask, np.nan, value)
+    marked = np.where(bad.mask, np.nan, array)
+    return Given(marked, value.kind) if isinstance(value, Given) else marked

@@ -12,7 +12,7 @@ import numpy as np
 
 from wellindex.errors import ArgumentsError, DomainError, ShapeError, UnitsError, WellIndexError
 from wellindex.units.checks import place
-from wellindex.units.kinds import Either, Kind
+from wellindex.units.kinds import Either, Kind, plain
 from wellindex.units.reading import EitherReader, KindReader, Problem
 
 _readers: dict[int, KindReader] = {}
@@ -49,7 +49,8 @@ def _parameter(name: str, annotation: Any) -> Parameter:
     if get_origin(first) is Literal and len(options) == 1:
         return Parameter(name, None, get_args(first), (), optional)
     instances = tuple(get_origin(option) or option for option in options)
-    if first is Any or not all(isinstance(option, type) for option in instances):
+    unclear = first is Any or Annotated in instances
+    if unclear or not all(isinstance(option, type) for option in instances):
         raise TypeError(f"argument {name!r} is declared with no kind: {annotation!r}")
     return Parameter(name, None, (), instances, optional)
 
@@ -149,10 +150,10 @@ class Declaration:
 
     def read_si(self, name: str, value: Any) -> Any:
         """Return one argument that is given in SI, without a unit."""
-        reader = self.parameters[name].reader
-        if reader is None or value is None:
+        parameter = self.parameters[name]
+        if parameter.reader is None or (value is None and parameter.optional):
             return self.read(name, value)
-        return reader.read_si(value)
+        return parameter.reader.read_si(value)
 
     def check(self, name: str, value: Any) -> None:
         """Raise `Problem` where an SI value lies outside the range of its kind."""
@@ -167,7 +168,7 @@ class Declaration:
         """Say what is out of range: needed, given, remedy."""
         reader = self.parameters[name].reader
         assert reader is not None
-        value = getattr(value, "value", value)
+        value = plain(value)
         flat = int(np.argmax(bad.mask))
         number = float(np.ravel(value)[flat])
         unit = "" if reader.kind.si == "dimensionless" else f" {reader.kind.si}"

@@ -9,6 +9,7 @@ from typing import Any, NamedTuple
 import numpy as np
 import pint
 
+from wellindex.errors import DomainError
 from wellindex.units.answers import as_quantity, in_other_registry
 from wellindex.units.checks import AT_ONCE, Tally
 from wellindex.units.declaration import Declaration, Parameter
@@ -113,6 +114,34 @@ class Careful:
             return in_other_registry(kind, result, registry)
         return as_quantity(kind, result)
 
+    def si(self, given: dict[str, Any]) -> Any:
+        """Evaluate numbers and arrays that are given in SI, without units."""
+        keep_going = given.get("invalid") == "nan"
+        values: dict[str, Any] = {}
+        problems: dict[str, Problem] = {}
+        for name, value in given.items():
+            self._take(name, self.declaration.read_si, value, keep_going, values, problems)
+        if problems:
+            self.declaration.raise_for(problems)
+        return self._evaluate({}, values, {}, keep_going)
+
+    def _take(
+        self,
+        name: str,
+        read: Callable[[str, Any], Any],
+        value: Any,
+        keep_going: bool,
+        values: dict[str, Any],
+        problems: dict[str, Problem],
+    ) -> None:
+        """Read and check one argument, or note its problem."""
+        try:
+            values[name] = read(name, value)
+            if not (keep_going and isinstance(values[name], np.ndarray)):
+                self.declaration.check(name, values[name])
+        except Problem as problem:
+            problems[name] = problem
+
     def _read(
         self, given: dict[str, Any], keep_going: bool, whole: bool = False
     ) -> tuple[dict[str, Any], dict[str, float]]:
@@ -123,14 +152,13 @@ class Careful:
         for name, value in given.items():
             try:
                 raw = None if whole else self._raw(name, value)
-                if raw is not None:
-                    values[name], scales[name] = raw
-                    continue
-                values[name] = self.declaration.read(name, value)
-                if not (keep_going and isinstance(values[name], np.ndarray)):
-                    self.declaration.check(name, values[name])
             except Problem as problem:
                 problems[name] = problem
+                continue
+            if raw is not None:
+                values[name], scales[name] = raw
+            else:
+                self._take(name, self.declaration.read, value, keep_going, values, problems)
         if problems and scales:
             return self._read(given, keep_going, whole=True)
         if problems:
@@ -161,9 +189,9 @@ class Careful:
         tally = Tally(keep_going=keep_going)
         try:
             result = self._in_blocks(values, arrays, scales, shape, tally)
-        except _OutOfRange:
-            self._read(given, keep_going, whole=True)
-            raise AssertionError from None
+        except (_OutOfRange, DomainError):
+            self._read(given, keep_going, whole=True)  # ranges come before what the formula says
+            raise
         tally.report()
         return result
 

@@ -11,12 +11,9 @@ import math
 from collections.abc import Callable
 from typing import Any
 
-import numpy as np
-
 from wellindex.units.checks import AT_ONCE
-from wellindex.units.declaration import Declaration, Parameter
-from wellindex.units.evaluate import full
-from wellindex.units.reading import Problem
+from wellindex.units.declaration import Parameter
+from wellindex.units.evaluate import Careful
 
 
 def _condition(parameter: Parameter) -> str | None:
@@ -31,8 +28,9 @@ def _condition(parameter: Parameter) -> str | None:
     return f"({name} is None or {test})" if parameter.optional else f"({test})"
 
 
-def compile_si(body: Callable[..., Any], declaration: Declaration) -> Callable[..., Any]:
-    """Write and compile the SI form of `body`."""
+def compile_si(careful: Careful) -> Callable[..., Any]:
+    """Write and compile the SI form of a formula; what is not plain goes the careful way."""
+    body, declaration = careful.body, careful.declaration
     names = list(declaration.parameters)
     conditions = [c for c in map(_condition, declaration.parameters.values()) if c]
     arguments = [
@@ -41,23 +39,19 @@ def compile_si(body: Callable[..., Any], declaration: Declaration) -> Callable[.
     passed = ", ".join(f"{name}={name}" for name in names)
     source = (
         f"def si(*, {', '.join(arguments)}):\n"
-        f"    if {' and '.join(conditions)}:\n"
+        f"    if {' and '.join(conditions) or 'True'}:\n"
         f"        return _body(_check, {passed})\n"
         f"    return _general(dict({passed}))\n"
     )
     filename = f"<wellindex si {declaration.name}>"
     linecache.cache[filename] = (len(source), None, source.splitlines(keepends=True), filename)
 
-    def general(values: dict[str, Any]) -> Any:
-        read, shape = _read_si(declaration, values)
-        result = body(AT_ONCE, **read)
-        return full(result, shape) if shape is not None else result
-
     namespace: dict[str, Any] = {
+        "__name__": __name__,
         "_body": body,
         "_check": AT_ONCE,
         "_defaults": declaration.defaults,
-        "_general": general,
+        "_general": careful.si,
         "inf": math.inf,
     }
     exec(compile(source, filename, "exec"), namespace)
@@ -65,26 +59,3 @@ def compile_si(body: Callable[..., Any], declaration: Declaration) -> Callable[.
     si.__qualname__ = f"{declaration.name}.si"
     si.__doc__ = f"`{declaration.name}` on SI floats or arrays; see there."
     return si
-
-
-def _read_si(
-    declaration: Declaration, values: dict[str, Any]
-) -> tuple[dict[str, Any], tuple[int, ...] | None]:
-    """Return the values, and the shape of the answer where one of them is an array."""
-    problems: dict[str, Problem] = {}
-    read: dict[str, Any] = {}
-    for name, value in values.items():
-        try:
-            read[name] = declaration.read_si(name, value)
-            declaration.check(name, read[name])
-        except Problem as problem:
-            problems[name] = problem
-    if problems:
-        declaration.raise_for(problems)
-    arrays = {name: v for name, v in read.items() if isinstance(v, np.ndarray)}
-    if not arrays:
-        return read, None
-    try:
-        return read, np.broadcast_shapes(*(array.shape for array in arrays.values()))
-    except ValueError:
-        declaration.raise_shapes(arrays)

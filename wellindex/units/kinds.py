@@ -85,6 +85,11 @@ class Given:
     kind: Kind
 
 
+def plain(value: Any) -> Any:
+    """Return the bare SI value of a `Given`, or the value itself."""
+    return value.value if isinstance(value, Given) else value
+
+
 _LENGTH = {"[length]": 1.0}
 _VOLUME = {"[length]": 3.0}
 _SURFACE = {"[standard_volume]": 1.0}

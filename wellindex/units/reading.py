@@ -212,8 +212,10 @@ class KindReader:
             raise Problem(UnitsError, self.kind.name, _shown(given), str(error)) from None
         if dimension != self.kind.dimension:
             raise _wrong_dimension(self.kind, units, _shown(given))
-        if self.kind.si == "radian" and not ANGLES & set(dict(units)):
-            remedy = "a plain number is no angle: write degree or radian"
+        angle = self.kind.si == "radian"
+        if not self.kind.dimension and angle != bool(ANGLES & set(dict(units))):
+            meant = "a plain number is no angle: write degree or radian"
+            remedy = meant if angle else "an angle is not what is meant here"
             raise Problem(UnitsError, self.kind.name, _shown(given), remedy)
         if registry is not ureg:
             _check_names(self.kind, units, registry, _shown(given))
@@ -290,8 +292,3 @@ def _floats(value: Any, kind: Kind, given: Any) -> Any:
         raise refused(f"an array of real numbers is needed, not of {array.dtype}")
     floats = array.astype(np.float64, copy=False)
     return float(floats) if floats.ndim == 0 else floats
-
-
-def is_foreign(value: Any) -> bool:
-    """Tell whether `value` is a quantity of another registry."""
-    return isinstance(value, pint.Quantity) and type(value) is not OUR_QUANTITY

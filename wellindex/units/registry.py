@@ -96,6 +96,8 @@ class Registry(pint.registry.GenericUnitRegistry[Quantity, Unit]):
             raise UnknownName(str(error)) from None
 
     def _guard(self, string: str) -> str:
+        if string == "":
+            return string  # no unit: as in ``ratio.to("")``
         return text.guard(string, self.names)
 
     def __deepcopy__(self, memo: dict[int, Any]) -> Any:

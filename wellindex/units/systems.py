@@ -66,7 +66,7 @@ def _site_pressure(given: Quantity | str | None) -> float:
 
 @contextmanager
 def unit_system(
-    name: SystemName | str, *, site_pressure: Quantity | str | None = None
+    name: SystemName, *, site_pressure: Quantity | str | None = None
 ) -> Iterator[UnitSystem]:
     """Answer in the units of one system inside a ``with`` block.
 
@@ -99,7 +99,7 @@ def unit_system(
         _in_force.reset(token)
 
 
-def set_unit_system(name: SystemName | str, *, site_pressure: Quantity | str | None = None) -> None:
+def set_unit_system(name: SystemName, *, site_pressure: Quantity | str | None = None) -> None:
     """Choose the unit system of a notebook or script; a library must not call this.
 
     Parameters
