@@ -22,7 +22,9 @@ from wellindex.index import productivity_index, well_index
 from wellindex.profile import RadialProfile, radial_profile
 from wellindex.radius.closed_form import equivalent_radius, equivalent_wellbore_radius
 from wellindex.rock import Permeability, permeability_from_conductivity
+from wellindex.space.crossing import Crossings, cross
 from wellindex.space.grid import TensorGrid
+from wellindex.space.hexahedral import HexahedralGrid
 from wellindex.space.path import Path
 from wellindex.space.survey import Survey
 from wellindex.state import WellState
@@ -41,7 +43,9 @@ __all__ = [
     "CaseError",
     "Convention",
     "Couplings",
+    "Crossings",
     "DomainError",
+    "HexahedralGrid",
     "Liquid",
     "Path",
     "Permeability",
@@ -56,6 +60,7 @@ __all__ = [
     "WellState",
     "Workings",
     "couple",
+    "cross",
     "define_units",
     "equivalent_radius",
     "equivalent_wellbore_radius",

@@ -6,19 +6,18 @@ from typing import Any, Literal
 
 import numpy as np
 
-from wellindex.couplings import Couplings, Plane, Rows
+from wellindex.couplings import Couplings, Rows
 from wellindex.errors import AssumptionWarning, DomainError, ShapeError
-from wellindex.index import (
-    Invalid,
-    Placement,
-    flow_resistance,
-    side_axis,
-)
-from wellindex.radius.closed_form import placed_radius
+from wellindex.index import Invalid, Placement, flow_resistance
+from wellindex.radius.crossed_block import Crossed, along_axis, projected
 from wellindex.rock import Permeability
-from wellindex.space.crossing import Crossings, crossings, onto_faces
+from wellindex.space import crossing
+from wellindex.space.crossing import Grid
 from wellindex.space.grid import AXES, SIDES, TensorGrid
+from wellindex.space.hexahedral import HexahedralGrid
+from wellindex.space.intervals import open_intervals
 from wellindex.space.path import Path
+from wellindex.space.tensor_crossing import onto_faces
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
@@ -26,39 +25,7 @@ from wellindex.units.checks import Checks, Tally, warn
 
 Array = np.ndarray[Any, Any]
 
-#: A path turned less than this from an axis (as a part of its length) runs along it.
-_STRAIGHT = 1e-9
 _TIGHT = "no permeability across the well: index 0"
-_PLANE = {"x": (1, 2), "y": (0, 2), "z": (0, 1)}
-
-
-def _open_intervals(path: Path, intervals: Any) -> Array:
-    """Return intervals in SI, (n, 2): checked, in order, inside the path."""
-    _points, depths = path.in_si()
-    if intervals is None:
-        return np.array([[depths[0], depths[-1]]])
-    intervals = np.asarray(intervals)
-    if intervals.ndim != 2 or intervals.shape[1] != 2:
-        raise ShapeError(
-            f"couple(): intervals are pairs (from, to) of measured depth; got {intervals.shape}"
-        )
-    slack = 1e-9 * max(abs(depths[0]), abs(depths[-1]), 1.0)
-    for number, (top, bottom) in enumerate(intervals):
-        if not top < bottom:
-            raise DomainError(f"couple(): interval {number} does not run downwards along the path")
-        if top < depths[0] - slack or bottom > depths[-1] + slack:
-            first, last = (as_quantity(kinds.COORDINATE, float(d)) for d in (depths[0], depths[-1]))
-            raise DomainError(
-                f"couple(): interval {number} leaves the path, which runs from {first} to {last} "
-                "in measured depth"
-            )
-        if number and top < intervals[number - 1, 1] - slack:
-            raise DomainError(
-                f"couple(): interval {number} overlaps or precedes interval {number - 1}: list "
-                "intervals in order along the path"
-            )
-    inside: Array = np.clip(intervals, depths[0], depths[-1])
-    return inside
 
 
 def _per_interval(name: str, value: Any, count: int) -> Array:
@@ -84,19 +51,7 @@ def _joined(intervals: Array, rw: Array, skin: Array) -> tuple[Array, Array, Arr
     return np.column_stack((intervals[keep, 0], ends)), rw[keep], skin[keep]
 
 
-def _direction(found: Crossings) -> str:
-    """Return the axis that the whole open path runs along."""
-    total = found.components.sum(axis=0)
-    axis = int(np.argmax(total))
-    if total.sum() - total[axis] > _STRAIGHT * total[axis]:
-        raise DomainError(
-            'couple(): the path is not along one axis of the grid, and method "axis" knows no '
-            "other: give a path along x, y or z"
-        )
-    return AXES[axis]
-
-
-def _check_inside(found: Crossings, intervals: Array, given: bool) -> None:
+def _check_inside(found: crossing.Rows, intervals: Array, given: bool) -> None:
     """Refuse an interval with nothing in the grid; say where a part lies outside."""
     inside = np.bincount(found.interval, weights=found.length, minlength=len(intervals))
     for length, ends in zip(inside, intervals, strict=True):
@@ -113,14 +68,16 @@ def _check_inside(found: Crossings, intervals: Array, given: bool) -> None:
             warn(f"{lost} of {opened} lies outside the grid", AssumptionWarning)
 
 
-def _caution_sides(found: Crossings, grid: TensorGrid, direction: str) -> None:
+def _caution_sides(found: crossing.Rows, grid: Grid, crossed: Crossed) -> None:
     """Warn where a path runs on an outer side of the grid and is counted as a full circle."""
+    if not isinstance(grid, TensorGrid):
+        return
     for axis, name in enumerate(AXES):
-        if name == direction:
-            continue
         edges = grid.edges()[axis]
+        along = crossed.components[:, axis] == 0.0
+        places = onto_faces(found.midpoint[along, axis], edges)
         for side, edge in zip(SIDES[name], (edges[0], edges[-1]), strict=True):
-            if np.any(onto_faces(found.midpoint[:, axis], edges) == edge):
+            if np.any(places == edge):
                 warn(
                     f"the path runs on the {side} side of the grid and is counted as a full "
                     f'circle; if nothing flows across that side, give placement="{side}"',
@@ -131,13 +88,13 @@ def _caution_sides(found: Crossings, grid: TensorGrid, direction: str) -> None:
 @reads
 def couple(
     path: Path,
-    grid: TensorGrid,
+    grid: TensorGrid | HexahedralGrid,
     permeability: Permeability,
     *,
     rw: kinds.Length,
     skin: kinds.Skin = 0.0,
     intervals: kinds.Coordinate | None = None,
-    method: Literal["axis"] = "axis",
+    method: Literal["projection", "axis"] = "projection",
     net_to_gross: kinds.Fraction = 1.0,
     placement: Placement = "centre",
     invalid: Invalid = "raise",
@@ -150,8 +107,8 @@ def couple(
     Parameters
     ----------
     path : Path
-        The well's path, along one axis of the grid.
-    grid : TensorGrid
+        The well's path; of a `Survey`, ``survey.path``.
+    grid : TensorGrid or HexahedralGrid
         The blocks.
     permeability : Permeability
         Along the axes of the grid; scalars, or one value per block.
@@ -162,8 +119,10 @@ def couple(
     intervals : list of pairs or Quantity, length, (m, 2), optional
         Open intervals in measured depth along the path, in order; default the whole path. An
         interval is open over its whole length: shot density is part of the skin.
-    method : {"axis"}
-        "axis": Peaceman's formula in the plane normal to the axis that the well runs along.
+    method : {"projection", "axis"}
+        "projection": the indices of a well along each axis, each with its own part of the length,
+        added as vectors (Shu 2005). "axis": Peaceman's formula in the plane normal to the axis
+        that the well runs along most. The two are the same for a well along an axis.
     net_to_gross : float or array (nx, ny, nz)
         Multiplies kx and ky, nothing else: between 0 and 1.
     placement : {"centre", "corner", "west", "east", "south", "north", "top", "bottom"}
@@ -181,7 +140,7 @@ def couple(
     Raises
     ------
     DomainError
-        A path that is not along one axis, an interval outside the path or the grid, intervals
+        A placement for an oblique path, an interval outside the path or the grid, intervals
         that overlap, ln(r0/rw) below 0.5, ln(r0/rw) + skin not positive.
     UnitsError, ShapeError
         A missing or wrong unit; an array that does not fit the grid or the intervals.
@@ -207,37 +166,42 @@ def couple(
     >>> print(f"{rows.length.to('ft'):.1f}")
     [15.0 20.0] ft
     """
-    opened = _open_intervals(path, intervals)
+    opened = open_intervals(path, intervals)
     count = len(opened)
     opened, radii, skins = _joined(
         opened, _per_interval("rw", rw, count), _per_interval("skin", skin, count)
     )
-    found = crossings(path, grid, opened)
+    crossed_grid = crossing.crossings(path, grid, opened)
+    found = crossed_grid.in_si()
     _check_inside(found, opened, intervals is not None)
-    direction = _direction(found)
-    if placement == "centre":
-        _caution_sides(found, grid, direction)
-    tally = Tally(keep_going=invalid == "nan")
-    tally.start(0, found.length.shape, found.length.size)
-    rows, plane = _axis_rows(
-        tally,
-        found,
-        grid,
+    crossed = Crossed(
+        found.components,
+        grid.sizes(found.cell),
         _net_permeability(permeability, grid, found.cell, net_to_gross),
-        direction,
         placement,
-        radii[found.interval],
-        skins[found.interval],
     )
-    if tally.lost is not None:
-        rows = rows._replace(r0=np.where(tally.lost, np.nan, rows.r0))
+    if placement == "centre":
+        _caution_sides(found, grid, crossed)
+    tally = Tally(keep_going=invalid == "nan")
+    tally.start(0, found.md_in.shape, found.md_in.size)
+    rows = _rows(tally, found, grid, crossed, method, radii[found.interval], skins[found.interval])
     tally.report()
+    return Couplings(rows, crossed=crossed, method=method, notes=_notes(rows, crossed_grid))
+
+
+def _notes(rows: Rows, found: crossing.Crossings) -> list[str]:
+    """Say what a row's reader must know: tight rock, another cell that claims the length."""
     notes = [_TIGHT if k == 0.0 else "" for k in rows.k_normal]
-    return Couplings(rows, plane=plane, direction=direction, method=method, notes=notes)
+    for top, bottom, cell in found.overlaps_in_si():
+        middle = 0.5 * (top + bottom)
+        for n in np.flatnonzero((rows.md_in <= middle) & (middle <= rows.md_out)):
+            also = f"cell {cell} claims a part of this length too"
+            notes[n] = f"{notes[n]}; {also}" if notes[n] else also
+    return notes
 
 
 def _net_permeability(
-    permeability: Permeability, grid: TensorGrid, cells: Array, net_to_gross: Any
+    permeability: Permeability, grid: Grid, cells: Array, net_to_gross: Any
 ) -> Array:
     """Return kx, ky, kz of the crossed blocks, (3, n), with net-to-gross on kx and ky."""
     if permeability.shape not in ((), grid.shape):
@@ -253,48 +217,35 @@ def _net_permeability(
     return np.stack((k[0] * net, k[1] * net, k[2]))
 
 
-def _axis_rows(
+def _rows(
     check: Checks,
-    found: Crossings,
-    grid: TensorGrid,
-    k: Array,
-    direction: str,
-    placement: Placement,
+    found: crossing.Rows,
+    grid: Grid,
+    crossed: Crossed,
+    method: str,
     rw: Array,
     skin: Array,
-) -> tuple[Rows, Plane]:
-    first, second = _PLANE[direction]
-    sizes = grid.sizes(found.cell)
-    plane = Plane(
-        axes=(AXES[first], AXES[second]),
-        d1=sizes[first],
-        d2=sizes[second],
-        k1=k[first],
-        k2=k[second],
-        placement=placement,
-    )
-    root_k1, root_k2 = np.sqrt(plane.k1), np.sqrt(plane.k2)
+) -> Rows:
+    needed = np.isnan(crossed.k).any(axis=0)
     check.refuse(
-        np.isnan(root_k1 + root_k2),
+        needed & np.isnan(along_axis(crossed).k_normal),
         'invalid="nan" keeps the other rows: a block on the path has no valid permeability',
     )
-    axis = side_axis(direction, placement)
-    r0, sector = placed_radius(plane.d1, plane.d2, root_k1, root_k2, placement, axis)
-    k_normal = root_k1 * root_k2
-    flow_resistance(check, r0, rw, skin, k_normal)
-    ones = np.ones(len(found.length))
-    rows = Rows(
+    length = found.length
+    by_method = along_axis(crossed) if method == "axis" else projected(check, crossed, length, rw)
+    flow_resistance(check, by_method.r0, rw, skin, by_method.k_normal)
+    lost = check.lost if isinstance(check, Tally) and check.lost is not None else False
+    return Rows(
         cell=found.cell,
         md_in=found.md_in,
         md_out=found.md_out,
         depth=found.midpoint[:, 2],
         block_depth=grid.centres(found.cell)[:, 2],
-        length=found.length,
-        k_normal=k_normal,
-        r0=r0,
+        length=length,
+        k_normal=by_method.k_normal,
+        r0=np.where(lost, np.nan, by_method.r0),
         rw=rw,
         skin=skin,
-        sector=sector * ones,
-        scale=ones,
+        sector=by_method.sector,
+        scale=np.ones(len(length)),
     )
-    return rows, plane

@@ -8,6 +8,8 @@ from typing import Any, NamedTuple
 import numpy as np
 
 from wellindex.index import geometric_index
+from wellindex.radius.crossed_block import Crossed
+from wellindex.space.grid import AXES
 from wellindex.table import Column, aligned, as_csv, as_json
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity, number_in
@@ -33,17 +35,6 @@ class Rows(NamedTuple):
     scale: Array
 
 
-class Plane(NamedTuple):
-    """What the equivalent radii in the plane normal to the well were found from, in SI."""
-
-    axes: tuple[str, str]
-    d1: Array
-    d2: Array
-    k1: Array
-    k2: Array
-    placement: str
-
-
 class Couplings:
     """The couplings of one well, one row per visit of a block, in order along the well.
 
@@ -54,10 +45,8 @@ class Couplings:
     ----------
     cell : array of int, (n, 3)
         Block indices (i, j, k) from 0.
-    plane : Plane
+    crossed : Crossed
         What the equivalent radii were found from, in SI.
-    direction : str
-        The axis that the well runs along.
     method : str
         How the equivalent radii were found.
     notes : list of str
@@ -75,17 +64,21 @@ class Couplings:
     4.557 cP*m**3/bar/day
     """
 
-    def __init__(
-        self, rows: Rows, *, plane: Plane, direction: str, method: str, notes: list[str]
-    ) -> None:
+    def __init__(self, rows: Rows, *, crossed: Crossed, method: str, notes: list[str]) -> None:
         self._rows = rows
-        self.plane = plane
-        self.direction = direction
+        self.crossed = crossed
         self.method = method
         self.notes = notes
 
     def __len__(self) -> int:
         return len(self._rows.length)
+
+    @property
+    def direction(self) -> str:
+        """The axis that the well runs along, or "oblique"."""
+        axes = set(self.crossed.dominant.tolist())
+        straight = len(axes) == 1 and bool(np.all(self.crossed.aligned))
+        return AXES[axes.pop()] if straight else "oblique"
 
     @property
     def cell(self) -> Array:
@@ -221,7 +214,7 @@ class Couplings:
         return self.table()
 
     def __repr__(self) -> str:
-        return f"Couplings({len(self)} rows along {self.direction}, method {self.method!r})"
+        return f"Couplings({len(self)} rows, {self.direction}, method {self.method!r})"
 
 
 class SIRows(NamedTuple):

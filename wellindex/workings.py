@@ -5,10 +5,14 @@ from __future__ import annotations
 import math
 from typing import Any, NamedTuple
 
-from wellindex.couplings import Couplings, Plane
+import numpy as np
+
+from wellindex.couplings import Couplings
 from wellindex.errors import DomainError, ShapeError
 from wellindex.index import TWO_PI, side_axis
 from wellindex.radius.closed_form import HALF_EXP_MINUS_GAMMA
+from wellindex.radius.crossed_block import PLANES, Crossed
+from wellindex.space.grid import AXES
 from wellindex.state import WellState
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
@@ -116,69 +120,162 @@ def workings(
     steps = {}
     for n in chosen:
         block = tuple(couplings.cell[n].tolist())
-        titles[n] = f"Coupling {n} in block {block}, well along {couplings.direction}"
+        titles[n] = f"Coupling {n} in block {block}, {_course(couplings, n)}"
         steps[n] = [*_index_steps(couplings, n), *(_rate_steps(state, n) if state else [])]
     return Workings(titles, steps)
+
+
+def _course(couplings: Couplings, n: int) -> str:
+    crossed = couplings.crossed
+    return f"well along {AXES[crossed.dominant[n]]}" if crossed.aligned[n] else "oblique well"
 
 
 def _show(kind: kinds.Kind, value: Any) -> str:
     return str(as_quantity(kind, float(value)))
 
 
-def _plane_texts(plane: Plane, n: int) -> tuple[str, str, str, str]:
-    """Return the widths and the permeabilities across the well as text."""
-    d1, d2 = (_show(kinds.LENGTH, d[n]) for d in (plane.d1, plane.d2))
-    k1, k2 = (_show(kinds.PERMEABILITY, k[n]) for k in (plane.k1, plane.k2))
-    return d1, d2, k1, k2
+class _Plane(NamedTuple):
+    """Names and texts of the two axes normal to a well along one axis."""
+
+    a: str
+    b: str
+    da: str
+    db: str
+    ka: str
+    kb: str
 
 
-def _radius_steps(couplings: Couplings, n: int) -> list[Step]:
-    plane = couplings.plane
-    a, b = plane.axes
-    d1, d2, k1, k2 = _plane_texts(plane, n)
-    centred = Step(
+def _plane(crossed: Crossed, n: int, axis: int) -> _Plane:
+    first, second = PLANES[axis]
+    sizes = [_show(kinds.LENGTH, crossed.sizes[i, n]) for i in (first, second)]
+    k = [_show(kinds.PERMEABILITY, crossed.k[i, n]) for i in (first, second)]
+    return _Plane(AXES[first], AXES[second], *sizes, *k)
+
+
+def _centred_step(crossed: Crossed, n: int, axis: int, result: float) -> Step:
+    a, b, da, db, ka, kb = _plane(crossed, n, axis)
+    return Step(
         "Equivalent radius (Peaceman 1983, eq. 14)",
         f"r0 = (exp(-gamma)/2) sqrt(k{b} d{a}^2 + k{a} d{b}^2) / (sqrt(k{a}) + sqrt(k{b}))",
-        f"{HALF_EXP_MINUS_GAMMA:.6g} sqrt({k2} x ({d1})^2 + {k1} x ({d2})^2) / "
-        f"(sqrt({k1}) + sqrt({k2}))",
-        _show(kinds.LENGTH, couplings.rows_in_si().r0[n]),
+        f"{HALF_EXP_MINUS_GAMMA:.6g} sqrt({kb} x ({da})^2 + {ka} x ({db})^2) / "
+        f"(sqrt({ka}) + sqrt({kb}))",
+        _show(kinds.LENGTH, result),
     )
-    if plane.placement == "centre":
+
+
+def _radius_steps(couplings: Couplings, n: int, axis: int) -> list[Step]:
+    crossed = couplings.crossed
+    centred = _centred_step(crossed, n, axis, couplings.rows_in_si().r0[n])
+    if crossed.placement == "centre":
         return [centred]
-    shape = f"{plane.d1[n] / plane.d2[n] * math.sqrt(plane.k2[n] / plane.k1[n]):.6g}"
-    exponent = _EXPONENTS[side_axis(couplings.direction, plane.placement)]
+    a, b, da, db, ka, kb = _plane(crossed, n, axis)
+    first, second = PLANES[axis]
+    sizes, k = crossed.sizes[:, n], crossed.k[:, n]
+    shape = f"{sizes[first] / sizes[second] * math.sqrt(k[second] / k[first]):.6g}"
+    exponent = _EXPONENTS[side_axis(AXES[axis], crossed.placement)]
     return [
         Step(
             "Shape of the block in stretched coordinates",
             f"u = (d{a} / d{b}) sqrt(k{b} / k{a})",
-            f"({d1} / {d2}) sqrt({k2} / {k1})",
+            f"({da} / {db}) sqrt({kb} / {ka})",
             shape,
         ),
         centred._replace(
-            title=f"{centred.title}, well placed: {plane.placement}",
+            title=f"{centred.title}, well placed: {crossed.placement}",
             formula=f"{centred.formula} x exp({exponent})",
             numbers=f"{centred.numbers} x exp({exponent.replace('u', shape)})",
         ),
     ]
 
 
-def _index_steps(couplings: Couplings, n: int) -> list[Step]:
-    rows, plane = couplings.rows_in_si(), couplings.plane
-    a, b = plane.axes
-    _, _, k1, k2 = _plane_texts(plane, n)
-    k_normal = _show(kinds.PERMEABILITY, rows.k_normal[n])
+def _along_axis_steps(couplings: Couplings, n: int, axis: int) -> list[Step]:
+    plane = _plane(couplings.crossed, n, axis)
+    rows = couplings.rows_in_si()
     across = Step(
-        "Permeability across the well", f"k = sqrt(k{a} k{b})", f"sqrt({k1} x {k2})", k_normal
+        "Permeability across the well",
+        f"k = sqrt(k{plane.a} k{plane.b})",
+        f"sqrt({plane.ka} x {plane.kb})",
+        _show(kinds.PERMEABILITY, rows.k_normal[n]),
     )
     if rows.k_normal[n] == 0.0:
-        return [across, Step("Well index", "wi = 0 where nothing flows across the well", "", "0")]
+        return [across]
+    return [*_radius_steps(couplings, n, axis), across]
+
+
+def _oblique_steps(couplings: Couplings, n: int) -> list[Step]:
+    """Return the steps of a row whose index is the vector sum over the axes (Shu 2005)."""
+    crossed, rows = couplings.crossed, couplings.rows_in_si()
+    rw, length = _show(kinds.LENGTH, rows.rw[n]), _show(kinds.LENGTH, rows.length[n])
+    steps, parts = [], []
+    for axis, name in enumerate(AXES):
+        across, component = crossed.across(axis)[n], crossed.components[n, axis]
+        if across * component == 0.0:
+            continue
+        plane = _plane(crossed, n, axis)
+        radius = float(crossed.radius(axis)[n])
+        index = TWO_PI * across * component / math.log(radius / rows.rw[n])
+        parts.append((name, _show(kinds.WELL_INDEX, index)))
+        steps += [
+            _centred_step(crossed, n, axis, radius)._replace(
+                title=f"Equivalent radius of a well along {name} (Peaceman 1983, eq. 14)"
+            ),
+            Step(
+                f"Index of the length along {name}, at zero skin",
+                f"wi_{name} = 2 pi sqrt(k{plane.a} k{plane.b}) L{name} / ln(r0/rw)",
+                f"{TWO_PI:.6g} sqrt({plane.ka} x {plane.kb}) x {_show(kinds.LENGTH, component)} "
+                f"/ ln({_show(kinds.LENGTH, radius)} / {rw})",
+                parts[-1][1],
+            ),
+        ]
+    k_normal = _show(kinds.PERMEABILITY, rows.k_normal[n])
+    extent = float(np.linalg.norm(crossed.components[n]))
+    tx, ty, tz = (f"{c / extent:.6g}" for c in crossed.components[n])
+    kx, ky, kz = (_show(kinds.PERMEABILITY, k) for k in crossed.k[:, n])
+    steps.append(
+        Step(
+            "Permeability across the well, t the direction in the block",
+            "k = sqrt(ky kz tx^2 + kx kz ty^2 + kx ky tz^2)",
+            f"sqrt({ky} x {kz} x {tx}^2 + {kx} x {kz} x {ty}^2 + {kx} x {ky} x {tz}^2)",
+            k_normal,
+        )
+    )
+    if not parts:
+        return steps
+    logarithm = math.log(rows.r0[n] / rows.rw[n])
+    total = TWO_PI * rows.k_normal[n] * rows.length[n] / logarithm
+    whole = _show(kinds.WELL_INDEX, total)
+    return [
+        *steps,
+        Step(
+            "Vector sum of the indices (Shu 2005)",
+            f"wi_0 = sqrt({' + '.join(f'wi_{name}^2' for name, _ in parts)})",
+            f"sqrt({' + '.join(f'({value})^2' for _, value in parts)})",
+            whole,
+        ),
+        Step(
+            "Equivalent radius of the row",
+            "r0 = rw exp(2 pi k length / wi_0)",
+            f"{rw} x exp({TWO_PI:.6g} x {k_normal} x {length} / {whole})",
+            _show(kinds.LENGTH, rows.r0[n]),
+        ),
+    ]
+
+
+def _index_steps(couplings: Couplings, n: int) -> list[Step]:
+    rows, crossed = couplings.rows_in_si(), couplings.crossed
+    if couplings.method == "axis" or crossed.aligned[n]:
+        steps = _along_axis_steps(couplings, n, int(crossed.dominant[n]))
+    else:
+        steps = _oblique_steps(couplings, n)
+    if rows.k_normal[n] == 0.0:
+        return [*steps, Step("Well index", "wi = 0 where nothing flows across the well", "", "0")]
     r0, rw, length = (_show(kinds.LENGTH, x[n]) for x in (rows.r0, rows.rw, rows.length))
+    k_normal = _show(kinds.PERMEABILITY, rows.k_normal[n])
     logarithm = math.log(rows.r0[n] / rows.rw[n])
     resistance = logarithm + rows.skin[n]
     wi = couplings.in_si().wi[n]
     return [
-        *_radius_steps(couplings, n),
-        across,
+        *steps,
         Step(
             "Flow resistance",
             "ln(r0/rw) + skin",

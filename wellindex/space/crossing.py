@@ -126,6 +126,10 @@ class Crossings:
             for a, b, cell in self._overlaps
         ]
 
+    def overlaps_in_si(self) -> list[tuple[float, float, tuple[int, ...]]]:
+        """Return the overlaps with plain measured depths in SI."""
+        return self._overlaps
+
     def in_si(self) -> Rows:
         """Return the rows as plain arrays in SI."""
         return self._rows
