@@ -19,6 +19,7 @@ from wellindex.rock import Permeability
 from wellindex.space.crossing import Crossings, crossings, onto_faces
 from wellindex.space.grid import AXES, SIDES, TensorGrid
 from wellindex.space.path import Path
+from wellindex.surroundings import off_side, surroundings
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
@@ -45,7 +46,7 @@ def _open_intervals(path: Path, intervals: Any) -> Array:
     slack = 1e-9 * max(abs(depths[0]), abs(depths[-1]), 1.0)
     for number, (top, bottom) in enumerate(intervals):
         if not top < bottom:
-            raise DomainError(f"couple(): interval {number} does not run downwards along the path")
+            raise DomainError(f"couple(): interval {number} does not run forwards along the path")
         if top < depths[0] - slack or bottom > depths[-1] + slack:
             first, last = (as_quantity(kinds.COORDINATE, float(d)) for d in (depths[0], depths[-1]))
             raise DomainError(
@@ -100,6 +101,9 @@ def _check_inside(found: Crossings, intervals: Array, given: bool) -> None:
     """Refuse an interval with nothing in the grid; say where a part lies outside."""
     inside = np.bincount(found.interval, weights=found.length, minlength=len(intervals))
     for length, ends in zip(inside, intervals, strict=True):
+        size = float(ends[1] - ends[0])
+        if length >= (1.0 - 1e-9) * size > 0.0:
+            continue
         top, bottom = (as_quantity(kinds.COORDINATE, float(end)) for end in ends)
         opened = f"the open interval from {top} to {bottom} in measured depth"
         if length == 0.0:
@@ -107,8 +111,7 @@ def _check_inside(found: Crossings, intervals: Array, given: bool) -> None:
                 f"couple(): {opened} crosses no block of the grid: check x, y and depth of the "
                 "path against the grid's origin and size"
             )
-        size = float(ends[1] - ends[0])
-        if given and length < (1.0 - 1e-9) * size:
+        if given:
             lost = as_quantity(kinds.LENGTH, size - float(length))
             warn(f"{lost} of {opened} lies outside the grid", AssumptionWarning)
 
@@ -126,6 +129,24 @@ def _caution_sides(found: Crossings, grid: TensorGrid, direction: str) -> None:
                     f'circle; if nothing flows across that side, give placement="{side}"',
                     AssumptionWarning,
                 )
+
+
+def _check_placement(
+    found: Crossings, grid: TensorGrid, direction: str, placement: Placement
+) -> None:
+    """Refuse a path that is not where the placement says it is."""
+    side_axis(direction, placement)
+    pairs = [SIDES[name] for name in AXES if name != direction]
+    wanted = pairs if placement == "corner" else [(placement,)]
+    for sides in wanted:
+        off = np.all([off_side(found.midpoint, found.cell, grid, s) for s in sides], axis=0)
+        if np.any(off):
+            block = tuple(found.cell[int(np.argmax(off))].tolist())
+            raise DomainError(
+                f"couple(): placement {placement!r} says that the well stands on the "
+                f"{' or '.join(sides)} side of its blocks, but the path does not run there in "
+                f"block {block}: move the path onto the side, or leave the placement out"
+            )
 
 
 @reads
@@ -160,15 +181,17 @@ def couple(
     skin : float, or one per interval
         Local skin of the open length. Partial opening is geometry and must not be in it.
     intervals : list of pairs or Quantity, length, (m, 2), optional
-        Open intervals in measured depth along the path, in order; default the whole path. An
+        Open intervals in measured depth along the path, in order; default all of the path that
+        lies in the grid. An
         interval is open over its whole length: shot density is part of the skin.
     method : {"axis"}
         "axis": Peaceman's formula in the plane normal to the axis that the well runs along.
     net_to_gross : float or array (nx, ny, nz)
         Multiplies kx and ky, nothing else: between 0 and 1.
     placement : {"centre", "corner", "west", "east", "south", "north", "top", "bottom"}
-        Where in its blocks the well stands; see `well_index`. A place off centre inside a block
-        changes nothing: the grid cannot tell.
+        A side or a corner says that the path runs ON that side of its blocks, and that nothing
+        flows across the side; see `well_index`. A place off centre inside a block changes
+        nothing: the grid cannot tell.
     invalid : {"raise", "nan"}
         Whether one unusable row raises or gets an index of NaN with one warning.
 
@@ -181,8 +204,9 @@ def couple(
     Raises
     ------
     DomainError
-        A path that is not along one axis, an interval outside the path or the grid, intervals
-        that overlap, ln(r0/rw) below 0.5, ln(r0/rw) + skin not positive.
+        A path that is not along one axis, or not where `placement` says, an interval outside the
+        path or the grid, intervals that overlap, ln(r0/rw) below 0.5, ln(r0/rw) + skin not
+        positive.
     UnitsError, ShapeError
         A missing or wrong unit; an array that does not fit the grid or the intervals.
 
@@ -217,6 +241,8 @@ def couple(
     direction = _direction(found)
     if placement == "centre":
         _caution_sides(found, grid, direction)
+    else:
+        _check_placement(found, grid, direction, placement)
     tally = Tally(keep_going=invalid == "nan")
     tally.start(0, found.length.shape, found.length.size)
     rows, plane = _axis_rows(
@@ -232,7 +258,12 @@ def couple(
     if tally.lost is not None:
         rows = rows._replace(r0=np.where(tally.lost, np.nan, rows.r0))
     tally.report()
-    notes = [_TIGHT if k == 0.0 else "" for k in rows.k_normal]
+    notes = [
+        _TIGHT if k == 0.0 else note
+        for k, note in zip(
+            rows.k_normal, surroundings(found.cell, grid, direction, placement), strict=True
+        )
+    ]
     return Couplings(rows, plane=plane, direction=direction, method=method, notes=notes)
 
 

@@ -72,8 +72,6 @@ def _cells(points: Array, edges: tuple[Array, ...]) -> Array:
 
 def _leg_rows(start: Array, stop: Array, grid: TensorGrid) -> tuple[Array, Array, Array]:
     """Return cell, and fractions in and out, of the pieces of one leg that lie in blocks."""
-    ends = np.stack((start, stop), axis=1)
-    start, stop = np.array([onto_faces(*each) for each in zip(ends, grid.edges(), strict=True)]).T
     cuts = _pieces(start, stop, grid.edges())
     middle = 0.5 * (cuts[1:] + cuts[:-1])
     # A coordinate that does not change is taken as it is: rounding must not move it off a face.
@@ -82,11 +80,6 @@ def _leg_rows(start: Array, stop: Array, grid: TensorGrid) -> tuple[Array, Array
     inside = np.all(cells >= 0, axis=1)
     inside[inside] = grid.exists(cells[inside])
     return cells[inside], cuts[:-1][inside], cuts[1:][inside]
-
-
-def _position(path: Path, md: float) -> Array:
-    points, depths = path.in_si()
-    return np.array([np.interp(md, depths, points[:, axis]) for axis in range(3)])
 
 
 @dataclass
@@ -121,37 +114,44 @@ def crossings(path: Path, grid: TensorGrid, intervals: Array) -> Crossings:
     `intervals` holds measured depths in SI, (n, 2), in order. Pieces of one interval in one block
     are one row as long as the path does not leave the block between them.
     """
-    _points, depths = path.in_si()
     visits: list[_Visit] = []
     for number, (top, bottom) in enumerate(intervals):
         if not top < bottom:
             continue
-        stations = np.concatenate(([top], depths[(depths > top) & (depths < bottom)], [bottom]))
-        for leg in pairwise(stations.tolist()):
-            for visit in _leg_visits(path, grid, number, leg):
-                if visits and visits[-1].continues(visit):
-                    visits[-1].extend(visit)
-                else:
-                    visits.append(visit)
+        for visit in _interval_visits(path, grid, number, top, bottom):
+            if visits and visits[-1].continues(visit):
+                visits[-1].extend(visit)
+            else:
+                visits.append(visit)
     return _collect(visits)
 
 
-def _leg_visits(
-    path: Path, grid: TensorGrid, number: int, leg: tuple[float, float]
+def _interval_visits(
+    path: Path, grid: TensorGrid, number: int, top: float, bottom: float
 ) -> Iterator[_Visit]:
-    start, stop = _position(path, leg[0]), _position(path, leg[1])
-    size = leg[1] - leg[0]
-    for cell, into, out in zip(*_leg_rows(start, stop, grid), strict=True):
-        length = (out - into) * size
-        yield _Visit(
-            cell=tuple(cell.tolist()),
-            interval=number,
-            md_in=leg[0] + into * size,
-            md_out=leg[0] + out * size,
-            length=length,
-            components=np.abs(stop - start) * (out - into),
-            moment=length * (start + 0.5 * (into + out) * (stop - start)),
-        )
+    points, depths = path.in_si()
+    first, last = np.searchsorted(depths, (top, bottom), side="right")
+    stations = np.concatenate(([top], depths[first:last], [bottom]))
+    stations = stations[np.concatenate(([True], np.diff(stations) > 0.0))]
+    places = np.column_stack(
+        [
+            onto_faces(np.interp(stations, depths, x), faces)
+            for x, faces in zip(points.T, grid.edges(), strict=True)
+        ]
+    )
+    for n, (md_a, md_b) in enumerate(pairwise(stations.tolist())):
+        start, stop, size = places[n], places[n + 1], md_b - md_a
+        for cell, into, out in zip(*_leg_rows(start, stop, grid), strict=True):
+            length = (out - into) * size
+            yield _Visit(
+                cell=tuple(cell.tolist()),
+                interval=number,
+                md_in=md_a + into * size,
+                md_out=md_a + out * size,
+                length=length,
+                components=np.abs(stop - start) * (out - into),
+                moment=length * (start + 0.5 * (into + out) * (stop - start)),
+            )
 
 
 def _collect(visits: list[_Visit]) -> Crossings:

@@ -10,6 +10,7 @@ from wellindex.errors import DomainError, ShapeError
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
+from wellindex.units.elementwise import frozen
 from wellindex.units.registry import Quantity
 
 
@@ -55,8 +56,8 @@ class Path:
         same = np.flatnonzero(legs == 0.0)
         if same.size:
             raise DomainError(f"Path(): points {same[0]} and {same[0] + 1} are the same")
-        self._points = points
-        self._md = measured_depth + np.concatenate(([0.0], np.cumsum(legs)))
+        self._points = frozen(points)
+        self._md = frozen(measured_depth + np.concatenate(([0.0], np.cumsum(legs))))
 
     @property
     def points(self) -> Quantity:
