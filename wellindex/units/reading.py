@@ -138,7 +138,7 @@ class KindReader:
         self.high = kind.range.high
         self.ours: dict[int, Factor] = {}
         self.others: dict[int, Factor] = {}
-        self.by_value: dict[tuple[Any, Any], Factor] = {}
+        self.by_value: dict[tuple[Any, Any], float] = {}
 
     def read(self, value: Any) -> Any:
         """Return `value` in SI, unchecked against the range; raise `Problem` otherwise."""
@@ -222,26 +222,28 @@ class KindReader:
             if not self.kind.measured_from_zero:
                 raise Problem(UnitsError, self.kind.name, shown(given), _OWN_ZERO)
             return None
+        if len(self.by_value) >= _REMEMBERED:
+            self.by_value.clear()
+        self.by_value[registry, tuple(units.unit_items())] = one
         return self._remember(memory, Factor(units, one, registry))
 
     def _remember(self, memory: dict[int, Factor], factor: Factor) -> Factor:
-        # The identity is what a call looks for first; the value serves units made afresh by
-        # arithmetic (150.0 * ureg.ft), each an object of its own.
         if len(memory) >= _REMEMBERED:
             memory.clear()
-        if len(self.by_value) >= _REMEMBERED:
-            self.by_value.clear()
         memory[id(factor.units)] = factor
-        self.by_value[factor.registry, tuple(factor.units.unit_items())] = factor
         return factor
 
     def recall(self, units: Any, registry: Any = ureg) -> Factor | None:
-        """Return the factor of a unit of the same value as one seen before, or None."""
-        known = self.by_value.get((registry, tuple(units.unit_items())))
-        if known is None:
+        """Return the factor of a unit of the same value as one seen before, or None.
+
+        A call looks for a unit's identity first; the value serves units made afresh by
+        arithmetic (150.0 * ureg.ft), each an object of its own.
+        """
+        si = self.by_value.get((registry, tuple(units.unit_items())))
+        if si is None:
             return None
         memory = self.ours if registry is ureg else self.others
-        return self._remember(memory, Factor(units, known.si, registry))
+        return self._remember(memory, Factor(units, si, registry))
 
     def _check_dimension(self, units: Any, registry: Any, given: Any) -> None:
         try:
