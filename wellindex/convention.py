@@ -12,11 +12,14 @@ from wellindex.errors import DomainError, UnitsError
 from wellindex.rock import STANDARD_GRAVITY
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
-from wellindex.units.boundary import reads
+from wellindex.units.boundary import called, reads
+from wellindex.units.definitions import OFFSET_UNITS
 from wellindex.units.reading import parse_unit
 from wellindex.units.registry import Quantity, ureg
 
 _Dimension = dict[str, float]
+
+_FLAGS = ("two_pi", "viscosity", "formation_volume_factor", "mass", "head", "per_length")
 
 _DIMENSIONS: dict[str, _Dimension] = {
     "two_pi": {},
@@ -40,10 +43,11 @@ class Contents(TypedDict, total=False):
 
 
 @reads
-def convention(
+@called("Convention")
+def _read_contents(
     *,
     wi: kinds.WellIndex | None = None,
-    number: kinds.Number | None = None,
+    number: kinds.Scale | None = None,
     viscosity: kinds.Viscosity | None = None,
     relative_permeability: kinds.Fraction = 1.0,
     formation_volume_factor: kinds.LiquidVolumeFactor | None = None,
@@ -116,9 +120,17 @@ class Convention:
     per_length: bool = False
 
     def __post_init__(self) -> None:
+        for name in _FLAGS:
+            if not isinstance(getattr(self, name), bool):
+                raise UnitsError(f"Convention(): {name} is True or False")
         if self.formation_volume_factor and self.mass:
             raise DomainError("Convention(): a number is per surface volume or per mass, not both")
         units = parse_unit(self.unit)
+        if OFFSET_UNITS & set(dict(units)):
+            raise UnitsError(
+                f"Convention(): {self.unit!r} holds a unit with a zero of its own (a gauge "
+                "pressure): a rate is per difference of pressure, write psi or bar"
+            )
         given = dict(ureg.get_dimensionality(units))
         if given != self._dimension():
             needed = " ".join(f"{name}**{power:g}" for name, power in self._dimension().items())
@@ -184,7 +196,7 @@ class Convention:
         UnitsError
             Something that the number contains is not given; the message says what.
         """
-        given = convention(wi=wi, **data)
+        given = _read_contents(wi=wi, **data)
         return given["wi"] * self._factor(self._powers(), given) / _si_value(self.unit)
 
     def well_index(self, number: Any, **data: Unpack[Contents]) -> Quantity:
@@ -208,7 +220,7 @@ class Convention:
         DomainError
             A relative permeability of zero, which no number can be divided by.
         """
-        given = convention(number=number, **data)
+        given = _read_contents(number=number, **data)
         powers = {name: -power for name, power in self._powers().items()}
         si = given["number"] * _si_value(self.unit) * self._factor(powers, given)
         return as_quantity(kinds.WELL_INDEX, si)
@@ -236,7 +248,7 @@ class Convention:
         """
         if not isinstance(to, Convention):
             raise UnitsError(f"convert(): to is a Convention, not {type(to).__name__}")
-        given = convention(number=number, **data)
+        given = _read_contents(number=number, **data)
         ours = self._powers()
         powers = {name: power - ours[name] for name, power in to._powers().items()}
         si = given["number"] * _si_value(self.unit) * self._factor(powers, given)

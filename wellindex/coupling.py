@@ -8,7 +8,7 @@ import numpy as np
 
 from wellindex.couplings import Couplings, Rows
 from wellindex.errors import AssumptionWarning, DomainError, ShapeError
-from wellindex.index import Invalid, Placement, flow_resistance
+from wellindex.index import Invalid, Placement, flow_resistance, side_axis
 from wellindex.radius.crossed_block import Crossed, along_axis, projected
 from wellindex.rock import Permeability
 from wellindex.space import crossing
@@ -18,6 +18,7 @@ from wellindex.space.hexahedral import HexahedralGrid
 from wellindex.space.intervals import open_intervals
 from wellindex.space.path import Path
 from wellindex.space.tensor_crossing import onto_faces
+from wellindex.surroundings import off_side, surroundings
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
@@ -55,6 +56,9 @@ def _check_inside(found: crossing.Rows, intervals: Array, given: bool) -> None:
     """Refuse an interval with nothing in the grid; say where a part lies outside."""
     inside = np.bincount(found.interval, weights=found.length, minlength=len(intervals))
     for length, ends in zip(inside, intervals, strict=True):
+        size = float(ends[1] - ends[0])
+        if length >= (1.0 - 1e-9) * size > 0.0:
+            continue
         top, bottom = (as_quantity(kinds.COORDINATE, float(end)) for end in ends)
         opened = f"the open interval from {top} to {bottom} in measured depth"
         if length == 0.0:
@@ -62,8 +66,7 @@ def _check_inside(found: crossing.Rows, intervals: Array, given: bool) -> None:
                 f"couple(): {opened} crosses no block of the grid: check x, y and depth of the "
                 "path against the grid's origin and size"
             )
-        size = float(ends[1] - ends[0])
-        if given and length < (1.0 - 1e-9) * size:
+        if given:
             lost = as_quantity(kinds.LENGTH, size - float(length))
             warn(f"{lost} of {opened} lies outside the grid", AssumptionWarning)
 
@@ -83,6 +86,25 @@ def _caution_sides(found: crossing.Rows, grid: Grid, crossed: Crossed) -> None:
                     f'circle; if nothing flows across that side, give placement="{side}"',
                     AssumptionWarning,
                 )
+
+
+def _check_placement(found: crossing.Rows, grid: Grid, crossed: Crossed) -> None:
+    """Refuse a path that is not where the placement says it is."""
+    if not isinstance(grid, TensorGrid):
+        return
+    axes = {AXES[axis] for axis in crossed.dominant}
+    for direction in axes:
+        side_axis(direction, crossed.placement)
+    pairs = [SIDES[name] for name in AXES if name not in axes]
+    for sides in pairs if crossed.placement == "corner" else [(crossed.placement,)]:
+        off = np.all([off_side(found.midpoint, found.cell, grid, s) for s in sides], axis=0)
+        if np.any(off):
+            block = tuple(found.cell[int(np.argmax(off))].tolist())
+            raise DomainError(
+                f"couple(): placement {crossed.placement!r} says that the well stands on the "
+                f"{' or '.join(sides)} side of its blocks, but the path does not run there in "
+                f"block {block}: move the path onto the side, or leave the placement out"
+            )
 
 
 @reads
@@ -117,7 +139,8 @@ def couple(
     skin : float, or one per interval
         Local skin of the open length. Partial opening is geometry and must not be in it.
     intervals : list of pairs or Quantity, length, (m, 2), optional
-        Open intervals in measured depth along the path, in order; default the whole path. An
+        Open intervals in measured depth along the path, in order; default all of the path that
+        lies in the grid. An
         interval is open over its whole length: shot density is part of the skin.
     method : {"projection", "axis"}
         "projection": the indices of a well along each axis, each with its own part of the length,
@@ -126,8 +149,9 @@ def couple(
     net_to_gross : float or array (nx, ny, nz)
         Multiplies kx and ky, nothing else: between 0 and 1.
     placement : {"centre", "corner", "west", "east", "south", "north", "top", "bottom"}
-        Where in its blocks the well stands; see `well_index`. A place off centre inside a block
-        changes nothing: the grid cannot tell.
+        A side or a corner says that the path runs ON that side of its blocks, and that nothing
+        flows across the side; see `well_index`. A place off centre inside a block changes
+        nothing: the grid cannot tell.
     invalid : {"raise", "nan"}
         Whether one unusable row raises or gets an index of NaN with one warning.
 
@@ -140,8 +164,8 @@ def couple(
     Raises
     ------
     DomainError
-        A placement for an oblique path, an interval outside the path or the grid, intervals
-        that overlap, ln(r0/rw) below 0.5, ln(r0/rw) + skin not positive.
+        A placement for an oblique path or not where the path runs, an interval outside the path
+        or the grid, intervals that overlap, ln(r0/rw) below 0.5, ln(r0/rw) + skin not positive.
     UnitsError, ShapeError
         A missing or wrong unit; an array that does not fit the grid or the intervals.
 
@@ -182,22 +206,31 @@ def couple(
     )
     if placement == "centre":
         _caution_sides(found, grid, crossed)
+    elif np.all(crossed.aligned):
+        _check_placement(found, grid, crossed)
     tally = Tally(keep_going=invalid == "nan")
     tally.start(0, found.md_in.shape, found.md_in.size)
     rows = _rows(tally, found, grid, crossed, method, radii[found.interval], skins[found.interval])
     tally.report()
-    return Couplings(rows, crossed=crossed, method=method, notes=_notes(rows, crossed_grid))
+    notes = _notes(rows, crossed, grid, crossed_grid)
+    return Couplings(rows, crossed=crossed, method=method, notes=notes)
 
 
-def _notes(rows: Rows, found: crossing.Crossings) -> list[str]:
-    """Say what a row's reader must know: tight rock, another cell that claims the length."""
-    notes = [_TIGHT if k == 0.0 else "" for k in rows.k_normal]
+def _notes(rows: Rows, crossed: Crossed, grid: Grid, found: crossing.Crossings) -> list[str]:
+    """Say what a row's reader must know: tight rock, surroundings, another cell's claim."""
+    around = [""] * len(rows.length)
+    if isinstance(grid, TensorGrid):
+        directions = [AXES[axis] for axis in crossed.dominant]
+        around = surroundings(rows.cell, grid, directions, crossed.placement)
+    notes = [
+        [_TIGHT] if k == 0.0 else [note] if note else []
+        for k, note in zip(rows.k_normal, around, strict=True)
+    ]
     for top, bottom, cell in found.overlaps_in_si():
         middle = 0.5 * (top + bottom)
         for n in np.flatnonzero((rows.md_in <= middle) & (middle <= rows.md_out)):
-            also = f"cell {cell} claims a part of this length too"
-            notes[n] = f"{notes[n]}; {also}" if notes[n] else also
-    return notes
+            notes[n].append(f"cell {cell} claims a part of this length too")
+    return ["; ".join(parts) for parts in notes]
 
 
 def _net_permeability(

@@ -10,9 +10,10 @@ import numpy as np
 from wellindex.index import geometric_index
 from wellindex.radius.crossed_block import Crossed
 from wellindex.space.grid import AXES
-from wellindex.table import Column, aligned, as_csv, as_json
+from wellindex.table import Column, aligned, as_csv, as_json, measured
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity, number_in
+from wellindex.units.elementwise import frozen
 from wellindex.units.registry import Quantity
 
 Array = np.ndarray[Any, Any]
@@ -41,17 +42,6 @@ class Couplings:
     `couple` makes them. Each row obeys
     ``wi = 2 pi sector k_normal length scale / (ln(r0/rw) + skin)``.
 
-    Attributes
-    ----------
-    cell : array of int, (n, 3)
-        Block indices (i, j, k) from 0.
-    crossed : Crossed
-        What the equivalent radii were found from, in SI.
-    method : str
-        How the equivalent radii were found.
-    notes : list of str
-        What a row's reader must know; empty where there is nothing.
-
     Examples
     --------
     >>> from wellindex import Path, Permeability, TensorGrid, couple
@@ -65,13 +55,65 @@ class Couplings:
     """
 
     def __init__(self, rows: Rows, *, crossed: Crossed, method: str, notes: list[str]) -> None:
-        self._rows = rows
-        self.crossed = crossed
-        self.method = method
-        self.notes = notes
+        self._rows = Rows(*map(frozen, rows))
+        self._crossed = crossed
+        self._method = method
+        self._notes = tuple(notes)
 
     def __len__(self) -> int:
         return len(self._rows.length)
+
+    def equals(self, other: Couplings) -> bool:
+        """Tell whether another table has the same rows."""
+        return len(self) == len(other) and all(
+            np.array_equal(one, two, equal_nan=True)
+            for one, two in zip(self._rows, other.rows_in_si(), strict=True)
+        )
+
+    def by_cell(self) -> tuple[Array, Quantity]:
+        """Sum the indices of all visits of a block, for codes that take one number per block.
+
+        Returns
+        -------
+        cell : array of int, (m, 3)
+            The blocks, in the order of their first visit.
+        wi : Quantity, well index, (m,)
+            The sum of their rows' indices.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m",
+        ...               intervals=[("1 m", "3 m"), ("5 m", "8 m")])
+        >>> cell, wi = rows.by_cell()
+        >>> len(rows), cell.tolist()
+        (2, [[1, 1, 0]])
+        >>> print(f"{wi[0]:.3f}")
+        4.557 cP*m**3/bar/day
+        """
+        cells, first, place = np.unique(
+            self._rows.cell, axis=0, return_index=True, return_inverse=True
+        )
+        sums = np.bincount(place.ravel(), weights=self.in_si().wi, minlength=len(cells))
+        order = np.argsort(first)
+        return cells[order], as_quantity(kinds.WELL_INDEX, sums[order])
+
+    @property
+    def crossed(self) -> Crossed:
+        """What the equivalent radii were found from, in SI."""
+        return self._crossed
+
+    @property
+    def method(self) -> str:
+        """How the equivalent radii were found."""
+        return self._method
+
+    @property
+    def notes(self) -> list[str]:
+        """What the reader of each row must know; empty where there is nothing."""
+        return list(self._notes)
 
     @property
     def direction(self) -> str:
@@ -153,7 +195,7 @@ class Couplings:
         """Return what a well needs, as plain arrays in SI."""
         rows = self._rows
         logarithm = np.log(rows.r0 / rows.rw) + rows.skin
-        flows = rows.k_normal != 0.0
+        flows = rows.k_normal > 0.0
         wi = geometric_index(
             rows.k_normal, rows.length * rows.scale, rows.sector, np.where(flows, logarithm, 1.0)
         )
@@ -163,7 +205,7 @@ class Couplings:
         """Return the table's columns as plain numbers in the unit system in force."""
         rows = self._rows
         cells = [Column(n, "", rows.cell[:, a].tolist()) for a, n in enumerate("ijk")]
-        measured = [
+        lengths = [
             ("md_in", kinds.COORDINATE, rows.md_in),
             ("md_out", kinds.COORDINATE, rows.md_out),
             ("depth", kinds.COORDINATE, rows.depth),
@@ -177,7 +219,7 @@ class Couplings:
         wi, unit = number_in(kinds.WELL_INDEX, self.in_si().wi)
         return [
             *cells,
-            *(_measured(name, kind, values) for name, kind, values in measured),
+            *(measured(name, kind, values) for name, kind, values in lengths),
             *(Column(name, "", values) for name, values in plain),
             Column("wi", unit, wi.tolist()),
             Column("note", "", self.notes),
@@ -223,8 +265,3 @@ class SIRows(NamedTuple):
     wi: Array
     depth: Array
     block_depth: Array
-
-
-def _measured(name: str, kind: kinds.Kind, values: Array) -> Column:
-    numbers, unit = number_in(kind, values)
-    return Column(name, unit, numbers.tolist())

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import Any, Literal
 
 import numpy as np
@@ -95,9 +96,11 @@ def radial_profile(
     pwf, p_block : Quantity or str, pressure
         In the wellbore and in the block.
     skin : float
-        Local skin; its pressure drop lies at the wellbore, so p(rw) differs from `pwf`.
+        Local skin; its pressure drop lies at the wellbore, so p(rw) differs from `pwf`. With a
+        negative skin the profile begins at the effective radius rw exp(-skin), where p is `pwf`.
     radius : Quantity, length, (n,), optional
-        Radii, none below the wellbore's; default 121 from the wellbore to the block's far side.
+        Radii, none below the wellbore's or the effective radius; default 121 from there to the
+        block's far side.
 
     Returns
     -------
@@ -138,13 +141,16 @@ def radial_profile(
     resistance = flow_resistance(AT_ONCE, true_r0, rw, skin, float(root_kx * root_ky))
     wellbore = float(stretched_wellbore(rw, kx, ky))
     r0 = true_r0 * wellbore / rw
+    # Inside the effective radius of a negative skin the logarithm stands for no pressure.
+    inner = wellbore * math.exp(max(0.0, -skin))
     if radius is None:
         stretch = np.sqrt(root_ky / root_kx)
-        radius = np.geomspace(wellbore, max(0.5 * max(dx * stretch, dy / stretch), r0), _POINTS)
-        radius[0] = wellbore
+        radius = np.geomspace(inner, max(0.5 * max(dx * stretch, dy / stretch), r0), _POINTS)
+        radius[0] = inner
     radius = np.atleast_1d(radius)
-    if np.any(radius < wellbore):
-        inside = as_quantity(kinds.LENGTH, wellbore)
-        raise DomainError(f"radial_profile(): a radius lies inside the wellbore of {inside}")
+    if np.any(radius < inner):
+        inside = as_quantity(kinds.LENGTH, inner)
+        what = "the wellbore" if inner == wellbore else "the effective radius rw exp(-skin)"
+        raise DomainError(f"radial_profile(): a radius lies inside {what} of {inside}")
     pressure = pwf + (p_block - pwf) * (np.log(radius / wellbore) + skin) / resistance
     return RadialProfile(radius, pressure, r0, wellbore, "true" if kx == ky else "stretched")

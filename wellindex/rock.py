@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from typing import Any, Literal
+from typing import Any, Literal, Self
 
 import numpy as np
 
@@ -12,6 +12,7 @@ from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import quantities, reads
 from wellindex.units.checks import Checks
+from wellindex.units.elementwise import frozen
 from wellindex.units.registry import Quantity
 
 STANDARD_GRAVITY = 9.80665
@@ -70,11 +71,12 @@ class Permeability:
                 raise ShapeError(
                     f"Permeability(): an array needs the shape (nx, ny, nz); got {shape}"
                 )
-        self._si = (kx, ky, kz)
+        self._si = tuple(frozen(k) if np.ndim(k) else k for k in (kx, ky, kz))
         self.shape: tuple[int, ...] = shapes.pop() if shapes else ()
 
     @classmethod
-    def from_tensor(cls, tensor: Quantity | str) -> Permeability:
+    @reads
+    def from_tensor(cls, tensor: kinds.TensorPermeability) -> Self:
         """Take the diagonal of a permeability tensor whose principal axes are the grid's.
 
         Parameters
@@ -99,7 +101,8 @@ class Permeability:
         >>> print(f"{Permeability.from_tensor(k).ky:.1f}")
         40.0 mD
         """
-        return _from_tensor(tensor=tensor)
+        _check_axes(tensor)
+        return cls(*(as_quantity(kinds.PERMEABILITY, tensor[i, i]) for i in range(3)))
 
     @property
     def kx(self) -> Quantity:
@@ -129,8 +132,8 @@ class Permeability:
         return f"Permeability({self.kx}, {self.ky}, {self.kz})"
 
 
-@reads
-def _from_tensor(*, tensor: kinds.TensorPermeability) -> Permeability:
+def _check_axes(tensor: np.ndarray[Any, Any]) -> None:
+    """Refuse a tensor that is none, or whose principal directions are not the grid's."""
     if np.shape(tensor) != (3, 3):
         raise ShapeError(f"a permeability tensor has the shape (3, 3); got {np.shape(tensor)}")
     size = float(np.abs(tensor).max())
@@ -151,7 +154,6 @@ def _from_tensor(*, tensor: kinds.TensorPermeability) -> Permeability:
             f"formulas have no place for that: turn the grid {abs(turn):.4g} degrees "
             f"{'counter-clockwise' if turn > 0 else 'clockwise'} (seen from above)"
         )
-    return Permeability(*(as_quantity(kinds.PERMEABILITY, tensor[i, i]) for i in range(3)))
 
 
 @quantities

@@ -7,10 +7,11 @@ from typing import Any, NamedTuple
 import numpy as np
 
 from wellindex.couplings import Couplings
+from wellindex.errors import ShapeError
 from wellindex.fluid import Liquid
-from wellindex.table import Column, aligned
+from wellindex.table import Column, aligned, measured
 from wellindex.units import kinds
-from wellindex.units.answers import as_quantity, number_in
+from wellindex.units.answers import as_quantity
 from wellindex.units.registry import Quantity
 
 Array = np.ndarray[Any, Any]
@@ -24,6 +25,7 @@ class Flow(NamedTuple):
     wellbore: Array
     drawdown: Array
     rates: Array
+    total: Array
 
 
 class Basis(NamedTuple):
@@ -42,20 +44,36 @@ class WellState:
     block pressures were given at once, the well's values have their leading shape and the
     couplings' have one axis more.
 
-    Attributes
-    ----------
-    couplings : Couplings
-        The well's couplings, in the order of the per-coupling values.
-    basis : Basis
-        Role, fluid, relative permeability and reference depth.
+    Screening values: not for well control, nor a substitute for licensed engineering and local
+    regulation.
+
+    Examples
+    --------
+    >>> from wellindex import Liquid, Path, Permeability, TensorGrid, Well, couple
+    >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+    >>> path = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+    >>> rows = couple(path, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+    >>> oil = Liquid(viscosity="2 cP", formation_volume_factor=1.25)
+    >>> Well(rows, oil).at_rate("100 sm3/day", block_pressure="200 bar")
+    WellState(producer, 172.569 bar, 100 sm3/day, 125 rm3/day)
     """
 
     def __init__(self, flow: Flow, couplings: Couplings, basis: Basis) -> None:
         self._flow = flow
         self._volume_factor = basis.fluid.in_si().volume_factor
-        self._total = np.sum(flow.rates, axis=-1)
-        self.couplings = couplings
-        self.basis = basis
+        self._total = flow.total
+        self._couplings = couplings
+        self._basis = basis
+
+    @property
+    def couplings(self) -> Couplings:
+        """The well's couplings, in the order of the per-coupling values."""
+        return self._couplings
+
+    @property
+    def basis(self) -> Basis:
+        """Role, fluid, relative permeability and reference depth."""
+        return self._basis
 
     @property
     def role(self) -> str:
@@ -147,15 +165,15 @@ class WellState:
     def columns(self) -> list[Column]:
         """Return the per-coupling values as plain numbers in the unit system in force."""
         if self._flow.rates.ndim != 1:
-            raise ValueError("a table shows one state; this holds many: take them one at a time")
+            raise ShapeError("a table shows one state; this holds many: take them one at a time")
         surface = self._flow.rates / self._volume_factor
         return [
             *(Column(n, "", self.couplings.cell[:, a].tolist()) for a, n in enumerate("ijk")),
-            _measured("depth", kinds.COORDINATE, self.couplings.in_si().depth),
-            _measured("wellbore_pressure", kinds.PRESSURE, self._flow.wellbore),
-            _measured("drawdown", kinds.PRESSURE_DIFFERENCE, self._flow.drawdown),
-            _measured("reservoir_rate", kinds.RESERVOIR_RATE, self._flow.rates),
-            _measured("surface_rate", kinds.SURFACE_RATE, surface),
+            measured("depth", kinds.COORDINATE, self.couplings.in_si().depth),
+            measured("wellbore_pressure", kinds.PRESSURE, self._flow.wellbore),
+            measured("drawdown", kinds.PRESSURE_DIFFERENCE, self._flow.drawdown),
+            measured("reservoir_rate", kinds.RESERVOIR_RATE, self._flow.rates),
+            measured("surface_rate", kinds.SURFACE_RATE, surface),
             Column("backflow", "", self.backflow.tolist()),
         ]
 
@@ -173,6 +191,11 @@ class WellState:
             lines.append(f"  BACKFLOW: {self.backflow_words()}")
         return "\n".join(lines)
 
+    def __repr__(self) -> str:
+        if self._flow.rates.ndim != 1:
+            return f"WellState({self.role}, {self._total.size} states of shape {self._total.shape})"
+        return f"WellState({self.role}, {self.pwf}, {self.rate}, {self.reservoir_rate})"
+
     def __str__(self) -> str:
         if self._flow.rates.ndim != 1:
             return self.summary()
@@ -181,8 +204,3 @@ class WellState:
 
 def _answer(kind: kinds.Kind, value: Any) -> Quantity:
     return as_quantity(kind, value if np.ndim(value) else float(value))
-
-
-def _measured(name: str, kind: kinds.Kind, values: Array) -> Column:
-    numbers, unit = number_in(kind, values)
-    return Column(name, unit, numbers.tolist())

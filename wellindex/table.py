@@ -9,6 +9,11 @@ import math
 from collections.abc import Sequence
 from typing import Any, NamedTuple
 
+import numpy as np
+
+from wellindex.units.answers import number_in
+from wellindex.units.kinds import Kind
+
 
 class Column(NamedTuple):
     """One column: its name, its unit ("" for none) and one value per row."""
@@ -18,13 +23,19 @@ class Column(NamedTuple):
     values: Sequence[Any]
 
 
+def measured(name: str, kind: Kind, values: np.ndarray[Any, Any]) -> Column:
+    """Return SI values as a column in the unit system in force."""
+    numbers, unit = number_in(kind, values)
+    return Column(name, unit, numbers.tolist())
+
+
 def cell_text(value: Any) -> str:
     """Write one value: six digits for numbers, words as they are."""
     if isinstance(value, (bool, str)):
         return {True: "yes", False: "no"}[value] if isinstance(value, bool) else value
     if isinstance(value, int):
         return str(value)
-    return f"{value:.6g}"
+    return f"{value + 0.0:.6g}"  # no minus before a zero
 
 
 def header(column: Column) -> str:

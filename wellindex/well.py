@@ -16,6 +16,7 @@ from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
 from wellindex.units.checks import Tally, warn
+from wellindex.units.elementwise import frozen
 from wellindex.units.registry import Quantity
 
 Array = np.ndarray[Any, Any]
@@ -92,9 +93,7 @@ class Well:
             )
         if isinstance(reference_depth, np.ndarray):
             raise ShapeError(f"Well(): reference_depth is one value; got {reference_depth.shape}")
-        self.couplings = couplings
-        self.fluid = fluid
-        self.role = role
+        self._couplings = couplings
         self._liquid = fluid.in_si()
         self._transmissivity = rows.wi * relative_permeability / self._liquid.viscosity
         if not np.any(self._transmissivity != 0.0):
@@ -103,7 +102,7 @@ class Well:
             )
         shallowest = float(np.min(rows.depth))
         self._reference = shallowest if reference_depth is None else reference_depth
-        kr = np.broadcast_to(np.asarray(relative_permeability, dtype=float), (count,))
+        kr = frozen(np.broadcast_to(relative_permeability, (count,)))
         self._basis = Basis(role, fluid, kr, self._reference)
         gradient = self._gradient(rows.depth, rows.block_depth)
         self._head = gradient * (rows.depth - self._reference)
@@ -121,6 +120,21 @@ class Well:
                 "fluid has no density to carry pressures between them: give Liquid(density=...)"
             )
         return 0.0
+
+    @property
+    def couplings(self) -> Couplings:
+        """The couplings that the well flows through."""
+        return self._couplings
+
+    @property
+    def fluid(self) -> Liquid:
+        """What flows in the rock and stands in the wellbore."""
+        return self._basis.fluid
+
+    @property
+    def role(self) -> str:
+        """What the well is for, "producer" or "injector"."""
+        return self._basis.role
 
     @property
     def reference_depth(self) -> Quantity:
@@ -209,7 +223,7 @@ class Well:
         given = self._in_batch("rate", given, blocks)
         flows = self._transmissivity
         open_flow = np.sum(flows * (blocks - self._head), axis=-1)
-        return self._state((open_flow - given) / np.sum(flows), blocks, invalid)
+        return self._state((open_flow - given) / np.sum(flows), blocks, invalid, given)
 
     def _with_right_sign(self, rate: Any, invalid: Invalid) -> Any:
         """Refuse a rate against the role, or mark it NaN."""
@@ -249,7 +263,9 @@ class Well:
             ) from None
         return np.broadcast_to(np.asarray(value, dtype=float), shape)
 
-    def _state(self, pwf: Array, blocks: Array, invalid: Invalid) -> WellState:
+    def _state(
+        self, pwf: Array, blocks: Array, invalid: Invalid, rate: Array | None = None
+    ) -> WellState:
         wellbore = pwf[..., np.newaxis] + self._head
         below = np.minimum(pwf, np.min(wellbore, axis=-1)) < 0.0
         if np.any(below):
@@ -259,7 +275,12 @@ class Well:
         same = np.abs(drawdown) <= _SAME_PRESSURE * (np.abs(blocks) + np.abs(wellbore))
         drawdown = np.where(same, 0.0, drawdown)
         centres = np.broadcast_to(blocks - self._from_centre, drawdown.shape)
-        flow = Flow(pwf, centres, wellbore, drawdown, self._transmissivity * drawdown)
+        rates = self._transmissivity * drawdown
+        # A rate that was given is the total; a sum that is rounding only is none.
+        total = np.sum(rates, axis=-1)
+        rounding = np.abs(total) <= _SAME_PRESSURE * np.sum(np.abs(rates), axis=-1)
+        total = np.where(rounding, 0.0, total) if rate is None else np.where(below, np.nan, rate)
+        flow = Flow(pwf, centres, wellbore, drawdown, rates, total)
         state = WellState(flow, self.couplings, self._basis)
         if np.any(state.backflow):
             warn(state.backflow_words(), BackflowWarning)

@@ -56,6 +56,9 @@ class Workings:
         self._titles = titles
         self.steps = steps
 
+    def __repr__(self) -> str:
+        return f"Workings(of {len(self.steps)} couplings; print it to read them)"
+
     def __str__(self) -> str:
         parts = []
         for row, steps in self.steps.items():
@@ -111,7 +114,7 @@ def workings(
     """
     if row is not None and not 0 <= row < len(couplings):
         raise DomainError(f"workings(): row {row} is not in the table of {len(couplings)} rows")
-    if state is not None and state.couplings is not couplings:
+    if state is not None and not state.couplings.equals(couplings):
         raise DomainError("workings(): the state belongs to other couplings")
     if state is not None and state.coupling_rate.ndim != 1:
         raise ShapeError("workings(): the state holds many moments; give one of them")

@@ -109,6 +109,39 @@ def scalars() -> list[Line]:
     ]
 
 
+def _made(registry: Any) -> Callable[[], dict[str, Any]]:
+    """Return a maker of quantities by arithmetic, whose units are new objects each time."""
+    units = {name: registry.Unit(unit) for name, (_, unit) in BLOCK.items() if name != "skin"}
+
+    def make() -> dict[str, Any]:
+        made = {name: BLOCK[name][0] * unit for name, unit in units.items()}
+        return {**made, "skin": BLOCK["skin"][0]}
+
+    return make
+
+
+def fresh_units() -> list[Line]:
+    """Calls on quantities made by arithmetic just before; making them is not counted."""
+    registry = pint.UnitRegistry()
+    lines = []
+    for what, make in (("ours", _made(ureg)), ("a foreign registry's", _made(registry))):
+        plain_make = _made(registry)
+        making, call, plain_making, plain = in_turn(
+            [
+                make,
+                lambda make=make: well_index(**make()),  # type: ignore[misc]
+                plain_make,
+                lambda plain_make=plain_make: plain_pint(**plain_make()),  # type: ignore[misc]
+            ],
+            300,
+        )
+        own, other = call - making, plain - plain_making
+        bar = 4 if "foreign" in what else 8
+        name = f"units made afresh, {what}: plain pint over ours"
+        lines.append(Line(name, other / own, bar, True, _us(other, own)))
+    return lines
+
+
 def short_arrays() -> list[Line]:
     """Arrays of 10 to 100 elements against two scalar calls plus the bare formula."""
     lines = []
@@ -191,7 +224,7 @@ def main() -> None:
     parser.add_argument("--write", type=Path, help="also write the table as Markdown")
     options = parser.parse_args()
     assert equivalent_radius.si(dx=1.0, dy=1.0, kx=1.0, ky=1.0) > 0.0
-    lines = [*scalars(), *short_arrays(), *a_million(), *importing()]
+    lines = [*scalars(), *fresh_units(), *short_arrays(), *a_million(), *importing()]
     versions = (
         f"Python {platform.python_version()}, numpy {np.__version__}, pint {pint.__version__}"
     )

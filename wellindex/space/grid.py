@@ -10,6 +10,7 @@ from wellindex.errors import DomainError, ShapeError
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
+from wellindex.units.elementwise import frozen
 from wellindex.units.registry import Quantity
 
 AXES = ("x", "y", "z")
@@ -67,9 +68,9 @@ class TensorGrid:
         if np.shape(origin) != (3,):
             raise ShapeError("TensorGrid(): origin is one point (x, y, z)")
         self.shape = (len(sizes[0]), len(sizes[1]), len(sizes[2]))
-        self._sizes = tuple(sizes)
+        self._sizes = tuple(frozen(size) for size in sizes)
         self._edges = tuple(
-            start + np.concatenate(([0.0], np.cumsum(size)))
+            frozen(start + np.concatenate(([0.0], np.cumsum(size))))
             for start, size in zip(np.asarray(origin, dtype=float), sizes, strict=True)
         )
         self._present = self._mask(present)
@@ -77,13 +78,17 @@ class TensorGrid:
     def _mask(self, present: Any) -> np.ndarray[Any, Any] | None:
         if present is None:
             return None
-        mask = np.asarray(present)
+        try:
+            mask = np.asarray(present)
+        except ValueError:
+            raise ShapeError("TensorGrid(): present is no array: its rows differ") from None
         if mask.shape != self.shape or mask.dtype != np.bool_:
             raise ShapeError(
                 f"TensorGrid(): present is an array of bool of shape {self.shape}; "
                 f"got {mask.dtype} {mask.shape}"
             )
-        return mask.copy()
+        copy: np.ndarray[Any, Any] = frozen(mask)
+        return copy
 
     @property
     def dx(self) -> Quantity:
@@ -149,6 +154,16 @@ class TensorGrid:
     def edges(self) -> tuple[np.ndarray[Any, Any], ...]:
         """Return the coordinates of the block faces along x, y and z in SI."""
         return self._edges
+
+    def widths(self, axis: int) -> np.ndarray[Any, Any]:
+        """Return the sizes of the blocks along one axis in SI."""
+        widths: np.ndarray[Any, Any] = self._sizes[axis]
+        return widths
+
+    def has(self, cell: tuple[int, ...]) -> bool:
+        """Tell whether the grid has a block (i, j, k), and the block exists."""
+        inside = all(0 <= n < count for n, count in zip(cell, self.shape, strict=True))
+        return inside and (self._present is None or bool(self._present[cell]))
 
     def exists(self, cells: np.ndarray[Any, Any]) -> np.ndarray[Any, Any]:
         """Return which of some cells exist, (n,)."""

@@ -41,7 +41,8 @@ def shape_derivatives(at: Array) -> Array:
 def shape_weights(at: Array) -> Array:
     """Return the eight trilinear weights at points (m, 3), (m, 8)."""
     weights: Array = np.where(CORNERS == 1, at[:, np.newaxis, :], 1.0 - at[:, np.newaxis, :])
-    return weights.prod(axis=2)
+    product: Array = weights.prod(axis=2)
+    return product
 
 
 def _jacobians(corners: Array, at: Array) -> Array:

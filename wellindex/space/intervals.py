@@ -25,7 +25,7 @@ def open_intervals(path: Path, intervals: Any) -> Array:
     slack = 1e-9 * max(abs(depths[0]), abs(depths[-1]), 1.0)
     for number, (top, bottom) in enumerate(intervals):
         if not top < bottom:
-            raise DomainError(f"interval {number} does not run downwards along the path")
+            raise DomainError(f"interval {number} does not run forwards along the path")
         if top < depths[0] - slack or bottom > depths[-1] + slack:
             first, last = (as_quantity(kinds.COORDINATE, float(d)) for d in (depths[0], depths[-1]))
             raise DomainError(

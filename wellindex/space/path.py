@@ -10,6 +10,7 @@ from wellindex.errors import DomainError, ShapeError
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
+from wellindex.units.elementwise import frozen
 from wellindex.units.registry import Quantity
 
 
@@ -56,11 +57,11 @@ class Path:
         same = np.flatnonzero(legs == 0.0)
         if same.size:
             raise DomainError(f"Path(): points {same[0]} and {same[0] + 1} are the same")
-        self._points = points
+        self._points = frozen(points)
         if np.ndim(measured_depth):
-            self._md = self._given_depths(measured_depth)
+            self._md = frozen(self._given_depths(measured_depth))
         else:
-            self._md = measured_depth + np.concatenate(([0.0], np.cumsum(legs)))
+            self._md = frozen(measured_depth + np.concatenate(([0.0], np.cumsum(legs))))
 
     def _given_depths(self, depths: np.ndarray[Any, Any]) -> np.ndarray[Any, Any]:
         if depths.shape != (len(self._points),):

@@ -23,6 +23,12 @@ def onto_faces(x: Array, faces: Array) -> Array:
     return np.where(np.abs(x - nearest) <= _ON_FACE * np.abs(faces).max(), nearest, x)
 
 
+def onto_all_faces(points: Array, grid: TensorGrid) -> Array:
+    """Move points (n, 3) that miss faces of the grid by rounding alone onto them."""
+    columns = [onto_faces(x, faces) for x, faces in zip(points.T, grid.edges(), strict=True)]
+    return np.column_stack(columns)
+
+
 def _cuts(start: Array, stop: Array, edges: tuple[Array, ...]) -> Array:
     """Return the fractions along a leg at which it passes a face of the grid, with 0 and 1."""
     fractions = [np.empty(0)]
@@ -51,8 +57,6 @@ def _cells(points: Array, edges: tuple[Array, ...]) -> Array:
 
 def tensor_pieces(start: Array, stop: Array, grid: TensorGrid) -> Pieces:
     """Return the pieces of one leg that lie in blocks."""
-    ends = np.stack((start, stop), axis=1)
-    start, stop = np.array([onto_faces(*each) for each in zip(ends, grid.edges(), strict=True)]).T
     cuts = _cuts(start, stop, grid.edges())
     middle = 0.5 * (cuts[1:] + cuts[:-1])
     # A coordinate that does not change is taken as it is: rounding must not move it off a face.

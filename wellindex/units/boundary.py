@@ -15,7 +15,7 @@ from wellindex.units.checks import AT_ONCE, Checks, Tally
 from wellindex.units.declaration import Declaration
 from wellindex.units.evaluate import Careful, full, plan_for, scale_arrays
 from wellindex.units.kernel import compile_si
-from wellindex.units.kinds import Given, plain
+from wellindex.units.kinds import Given, Kind, plain
 from wellindex.units.reading import OUR_QUANTITY, Problem
 from wellindex.units.registry import Quantity
 
@@ -37,7 +37,7 @@ class Formula(Protocol[P]):
     def __call__(self, *args: P.args, **kwargs: P.kwargs) -> Quantity: ...
 
 
-def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # noqa: C901
+def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:
     """Turn a formula in coherent SI floats into one that takes and returns quantities.
 
     Parameters
@@ -55,15 +55,25 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
     declaration = Declaration(body, "check")
     if declaration.answer is None:
         raise TypeError(f"{declaration.name}: the answer is declared with no kind")
-    plan = {name: plan_for(parameter) for name, parameter in declaration.parameters.items()}
     careful = Careful(body, declaration)
+    formula = _formula(careful, declaration.answer)
+    formula.__signature__ = declaration.signature  # type: ignore[attr-defined]
+    formula.si = compile_si(careful)  # type: ignore[attr-defined]
+    return cast("Formula[P]", formula)
+
+
+def _formula(careful: Careful, answer: Kind) -> Callable[..., Any]:  # noqa: C901
+    """Return the formula that callers see.
+
+    The common forms of input are read here, in one loop without a call, because a call an
+    argument would double the cost of a scalar formula; all else goes the careful way.
+    """
+    body, declaration = careful.body, careful.declaration
+    plan = {name: plan_for(parameter) for name, parameter in declaration.parameters.items()}
     defaults = declaration.defaults
     expected = len(declaration.parameters)
-    answer = declaration.answer
     array_class, float64 = np.ndarray, np.dtype(np.float64)
 
-    # The common forms of input are read here, in one loop without a call, because a call an
-    # argument would double the cost of a scalar formula; all else goes the careful way.
     @functools.wraps(body)
     def formula(*args: Any, **given: Any) -> Any:  # noqa: C901
         if args:
@@ -75,11 +85,13 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
         for name, value in given.items():
             if name not in plan:
                 return careful(given)
-            factors, span, one_sided, bare, choices = plan[name]
+            factors, recall, span, one_sided, bare, choices = plan[name]
             if value.__class__ is OUR_QUANTITY:
                 known = factors.get(id(value._units))
                 if known is None or known[0] is not value._units:
-                    return careful(given)
+                    known = recall(value._units)
+                    if known is None:
+                        return careful(given)
                 magnitude = value._magnitude
                 if magnitude.__class__ is float or magnitude.__class__ is int:
                     try:
@@ -112,14 +124,12 @@ def quantities(body: Callable[Concatenate[Checks, P], Any]) -> Formula[P]:  # no
                 return careful(given)
         if len(values) != expected:
             return careful(given)
-        result = body(AT_ONCE, **values)  # type: ignore[call-arg]
+        result = body(AT_ONCE, **values)
         if shape is not None and (result.__class__ is not array_class or result.shape != shape):
             result = full(result, shape)
         return as_quantity(answer, result)
 
-    formula.__signature__ = declaration.signature  # type: ignore[attr-defined]
-    formula.si = compile_si(careful)  # type: ignore[attr-defined]
-    return cast("Formula[P]", formula)
+    return formula
 
 
 def reads(body: Callable[P, R]) -> Callable[P, R]:
@@ -135,8 +145,9 @@ def reads(body: Callable[P, R]) -> Callable[P, R]:
     TypeError
         At import, where an argument has no kind.
     """
-    method = next(iter(inspect.signature(body).parameters), "") == "self"
-    declaration = Declaration(body, "self")
+    first = next(iter(inspect.signature(body).parameters), "")
+    method = first in ("self", "cls")
+    declaration = Declaration(body, first if method else None)
 
     @functools.wraps(body)
     def reading(*args: Any, **given: Any) -> Any:
@@ -147,6 +158,16 @@ def reads(body: Callable[P, R]) -> Callable[P, R]:
         return body(*owner, **values)
 
     return cast("Callable[P, R]", reading)
+
+
+def called(name: str) -> Callable[[Callable[P, R]], Callable[P, R]]:
+    """Give a private function the name that its errors speak of: what the caller has called."""
+
+    def rename(body: Callable[P, R]) -> Callable[P, R]:
+        body.__qualname__ = name
+        return body
+
+    return rename
 
 
 def _read_all(declaration: Declaration, given: dict[str, Any]) -> dict[str, Any]:
@@ -160,7 +181,7 @@ def _read_all(declaration: Declaration, given: dict[str, Any]) -> dict[str, Any]
             if keep_going and isinstance(plain(values[name]), np.ndarray):
                 values[name] = _without_bad(declaration, name, values[name], tally)
             else:
-                declaration.check(name, values[name])
+                declaration.check(name, values[name], value)
         except Problem as problem:
             problems[name] = problem
     if problems:

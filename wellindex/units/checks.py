@@ -17,10 +17,14 @@ def warn(message: str, category: type[Warning]) -> None:
     """Warn at the line of the caller outside this package."""
     level = 2
     frame = sys._getframe(1)
-    while frame.f_back is not None and frame.f_globals.get("__name__", "").startswith(_PACKAGE):
+    while frame.f_back is not None and _is_ours(frame.f_globals.get("__name__", "")):
         frame = frame.f_back
         level += 1
     warnings.warn(message, category, stacklevel=level)
+
+
+def _is_ours(module: str) -> bool:
+    return module == _PACKAGE or module.startswith(_PACKAGE + ".")
 
 
 def place(flat: int, shape: tuple[int, ...]) -> str:
@@ -96,7 +100,8 @@ class Tally(Checks):
         if self.reasons:
             parts = "; ".join(f"{count} x {reason}" for reason, count in self.reasons.items())
             total = sum(self.reasons.values())
-            warn(f"{total} elements are not a number: {parts}", AssumptionWarning)
+            said = "1 element is" if total == 1 else f"{total} elements are"
+            warn(f"{said} not a number: {parts}", AssumptionWarning)
 
 
 def _example(shown: Any, bad: Any, flat: int) -> str:

@@ -3,17 +3,20 @@
 from __future__ import annotations
 
 import inspect
+import operator
 import types
 import typing
 from collections.abc import Callable
 from typing import Annotated, Any, Literal, NamedTuple, NoReturn, get_args, get_origin
 
 import numpy as np
+import pint
 
 from wellindex.errors import ArgumentsError, DomainError, ShapeError, UnitsError, WellIndexError
 from wellindex.units.checks import place
 from wellindex.units.kinds import Either, Kind, plain
-from wellindex.units.reading import EitherReader, KindReader, Problem
+from wellindex.units.reading import EitherReader, KindReader, Problem, shown
+from wellindex.units.text import nearest
 
 _readers: dict[int, KindReader] = {}
 
@@ -59,6 +62,13 @@ def answer_kind(hints: dict[str, Any]) -> Kind | None:
     """Return the kind of a formula's answer, or None where it answers with an object."""
     marks = getattr(hints.get("return"), "__metadata__", (None,))
     return marks[0] if isinstance(marks[0], Kind) else None
+
+
+def _whole_number(value: Any) -> int:
+    """Return a whole number of Python's or numpy's kind; a boolean is none."""
+    if isinstance(value, (bool, np.bool_)) or not hasattr(value, "__index__"):
+        raise Problem(UnitsError, "a whole number", repr(value), "give one")
+    return operator.index(value)
 
 
 class Declaration:
@@ -119,14 +129,11 @@ class Declaration:
 
     def check_names(self, given: dict[str, Any]) -> None:
         """Raise `TypeError` for unknown and missing arguments, all in one."""
-        from difflib import get_close_matches
-
-        parts = []
-        for name in given:
-            if name not in self.parameters:
-                close = get_close_matches(name, self.parameters, n=1)
-                hint = f"; did you mean {close[0]!r}?" if close else ""
-                parts.append(f"no argument {name!r}{hint}")
+        parts = [
+            f"no argument {name!r}{nearest(name, self.parameters)}"
+            for name in given
+            if name not in self.parameters
+        ]
         missing = [n for n in self.parameters if n in self.required and n not in given]
         if missing:
             parts.append("missing " + ", ".join(repr(name) for name in missing))
@@ -142,7 +149,11 @@ class Declaration:
             return parameter.reader.read(value)
         if parameter.choices and not (isinstance(value, str) and value in parameter.choices):
             choices = ", ".join(repr(choice) for choice in parameter.choices)
-            raise Problem(DomainError, f"one of {choices}", repr(value), "use one of these")
+            close = nearest(value, parameter.choices) if isinstance(value, str) else ""
+            remedy = close.removeprefix("; ") or "use one of these"
+            raise Problem(DomainError, f"one of {choices}", repr(value), remedy)
+        if int in parameter.instances:
+            return _whole_number(value)
         if parameter.instances and not isinstance(value, parameter.instances):
             wanted = " or ".join(kind.__name__ for kind in parameter.instances)
             raise Problem(UnitsError, wanted, repr(type(value).__name__), f"give a {wanted}")
@@ -155,25 +166,28 @@ class Declaration:
             return self.read(name, value)
         return parameter.reader.read_si(value)
 
-    def check(self, name: str, value: Any) -> None:
-        """Raise `Problem` where an SI value lies outside the range of its kind."""
+    def check(self, name: str, value: Any, given: Any = None) -> None:
+        """Raise `Problem` where an SI value, `given` so, lies outside the range of its kind."""
         reader = self.parameters[name].reader
         if reader is None or value is None:
             return
         bad = reader.check(value)
         if bad is not None:
-            raise Problem(DomainError, *self.range_words(name, value, bad))
+            raise Problem(DomainError, *self._range_words(name, value, bad, given))
 
-    def range_words(self, name: str, value: Any, bad: Any) -> tuple[str, str, str]:
+    def _range_words(self, name: str, value: Any, bad: Any, given: Any) -> tuple[str, str, str]:
         """Say what is out of range: needed, given, remedy."""
         reader = self.parameters[name].reader
         assert reader is not None
         value = plain(value)
         flat = int(np.argmax(bad.mask))
         number = float(np.ravel(value)[flat])
+        needed = f"{reader.kind.name}, {reader.kind.range.words}"
+        if isinstance(given, (str, pint.Quantity)) and not np.ndim(value):
+            return needed, shown(given), ""
         unit = "" if reader.kind.si == "dimensionless" else f" {reader.kind.si}"
         where = f" at {place(flat, np.shape(value))}" if np.ndim(value) else ""
-        return f"{reader.kind.name}, {reader.kind.range.words}", f"{number:.6g}{unit}{where}", ""
+        return needed, f"{number:.6g}{unit}{where}", ""
 
     def raise_for(self, problems: dict[str, Problem]) -> NoReturn:
         """Raise one error that lists every bad argument."""

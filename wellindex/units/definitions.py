@@ -28,7 +28,7 @@ million_stock_tank_barrels = 1e6 * stock_tank_barrel = MMstb
 
 RESERVOIR = """
 reservoir_cubic_metre = 1 * metre ** 3 = rm3
-reservoir_barrel = 0.158987294928 * metre ** 3 = rb = bbl
+reservoir_barrel = 0.158987294928 * metre ** 3 = rb
 """
 
 PRESSURE_REFERENCES = """
@@ -123,6 +123,14 @@ REFERENCE_VALUES = {
     "bara": (1e5, "pascal"),
 }
 
+#: Every name of a surface volume.
+SURFACE_NAMES = frozenset(
+    name.strip()
+    for line in SURFACE.splitlines()
+    for place, name in enumerate(line.split("="))
+    if place != 1 and name.strip()
+)
+
 #: Units measured from a zero of their own.
 OFFSET_UNITS = frozenset(
     {"psi_gauge", "bar_gauge", "degree_Celsius", "degree_Fahrenheit"},
@@ -145,6 +153,8 @@ REFUSED = {
     "bpd": "write rb/day (reservoir volume) or stb/day (surface volume)",
     "bopd": "write stb/day",
     "cfd": "write ft**3/day (reservoir volume) or scf/day (surface volume)",
+    "bbl": "write rb (reservoir barrel) or stb (stock-tank barrel)",
+    "bbls": "write rb (reservoir barrel) or stb (stock-tank barrel)",
     "barrel": "write rb (reservoir barrel) or stb (stock-tank barrel)",
     "barrels": "write rb (reservoir barrel) or stb (stock-tank barrel)",
     "oil_bbl": "write rb (reservoir barrel) or stb (stock-tank barrel)",

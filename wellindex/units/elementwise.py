@@ -37,6 +37,13 @@ def where(condition: Any, yes: Any, no: Any) -> Any:
     return np.where(condition, yes, no)
 
 
+def frozen(x: Any) -> Any:
+    """Return a copy of an array that nobody can change."""
+    copy = np.array(x)
+    copy.setflags(write=False)
+    return copy
+
+
 def least(x: Any) -> float:
     """Return the smallest element: NaN where there is one, infinity for no element."""
     if x.__class__ is float:

@@ -27,6 +27,7 @@ class Plan(NamedTuple):
     """What the common forms of one argument are read with."""
 
     factors: dict[int, Any]
+    recall: Callable[[Any], Any]
     span: tuple[float, float]
     one_sided: bool
     bare: bool
@@ -36,10 +37,10 @@ class Plan(NamedTuple):
 def plan_for(parameter: Parameter) -> Plan:
     reader = parameter.reader
     if reader is None:
-        return Plan({}, (0.0, 0.0), False, False, parameter.choices)
+        return Plan({}, lambda _units: None, (0.0, 0.0), False, False, parameter.choices)
     one_sided = reader.low <= 0.0 and reader.high == math.inf
     bare = not reader.kind.dimension and reader.kind.plain is not None
-    return Plan(reader.ours, (reader.low, reader.high), one_sided, bare, ())
+    return Plan(reader.ours, reader.recall, (reader.low, reader.high), one_sided, bare, ())
 
 
 _latest: list[tuple[list[float], int, np.ndarray[Any, Any]]] = [([], 0, np.empty((0, 0)))]
@@ -138,7 +139,7 @@ class Careful:
         try:
             values[name] = read(name, value)
             if not (keep_going and isinstance(values[name], np.ndarray)):
-                self.declaration.check(name, values[name])
+                self.declaration.check(name, values[name], value)
         except Problem as problem:
             problems[name] = problem
 

@@ -56,6 +56,7 @@ def compile_si(careful: Careful) -> Callable[..., Any]:
     }
     exec(compile(source, filename, "exec"), namespace)
     si: Callable[..., Any] = namespace["si"]
+    si.__module__ = body.__module__
     si.__qualname__ = f"{declaration.name}.si"
     si.__doc__ = f"`{declaration.name}` on SI floats or arrays; see there."
     return si

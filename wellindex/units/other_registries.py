@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from typing import Any
 
 import pint
@@ -45,14 +46,20 @@ def define_units(registry: pint.UnitRegistry[Any]) -> None:
     if not isinstance(registry, pint.registry.GenericUnitRegistry):
         raise UnitsError(f"define_units needs a pint.UnitRegistry, not {type(registry).__name__}")
     known = set(registry)
+    _refuse(name for name in REFERENCE_VALUES if name in known and not _agrees(registry, name))
     for line in FOR_OTHER_REGISTRIES.splitlines():
         if line and _names(line)[0] not in known:
             registry.define(_without(line, known))
-    wrong = [name for name, value in REFERENCE_VALUES.items() if not _agrees(registry, name, value)]
+    # A name that was read as something else before is still read so: say it.
+    _refuse(name for name in REFERENCE_VALUES if not _agrees(registry, name))
+
+
+def _refuse(names: Iterable[str]) -> None:
+    wrong = ", ".join(names)
     if wrong:
         raise UnitsError(
-            f"this registry gives {', '.join(wrong)} another value than the trade: call "
-            "define_units before these names are used, on a registry without them"
+            f"this registry gives {wrong} another value than the trade: call define_units before "
+            "these names are used, on a registry without them"
         )
 
 
@@ -64,9 +71,10 @@ def _without(line: str, known: set[str]) -> str:
     return ";".join([" = ".join([left, value, *free]), *offset])
 
 
-def _agrees(registry: Any, name: str, value: tuple[float, str]) -> bool:
+def _agrees(registry: Any, name: str) -> bool:
+    value, unit = REFERENCE_VALUES[name]
     try:
-        converted = float(registry.Quantity(1.0, name).m_as(value[1]))
+        converted = float(registry.Quantity(1, name).m_as(unit))
     except pint.PintError:
         return False
-    return abs(converted / value[0] - 1.0) < 1e-9
+    return abs(converted / value - 1.0) < 1e-9

@@ -10,7 +10,12 @@ import numpy as np
 import pint
 
 from wellindex.errors import DomainError, ShapeError, UnitsError, WellIndexError
-from wellindex.units.definitions import GAUGE_UNITS, MISTAKEN_ELSEWHERE, OFFSET_UNITS
+from wellindex.units.definitions import (
+    GAUGE_UNITS,
+    MISTAKEN_ELSEWHERE,
+    OFFSET_UNITS,
+    SURFACE_NAMES,
+)
 from wellindex.units.elementwise import greatest, least
 from wellindex.units.kinds import Either, Given, Kind
 from wellindex.units.registry import read_text, ureg
@@ -20,6 +25,7 @@ OUR_QUANTITY = ureg.Quantity
 BARREL = 0.158987294928
 ANGLES = frozenset({"radian", "degree"})
 _REMEMBERED = 1024
+_DEEPEST_LIST = 5
 _OWN_ZERO = "its unit has a zero of its own: write one without"
 _NEVER_NUMBERS = (numbers.Complex, str, bytes, dict, set, pint.Quantity)
 
@@ -50,7 +56,8 @@ class Bad(NamedTuple):
     reason: str
 
 
-def _shown(value: Any) -> str:
+def shown(value: Any) -> str:
+    """Return what was given, short enough for a message."""
     if isinstance(value, pint.Quantity) and np.ndim(value.magnitude) == 0:
         value = f"{value.magnitude} {value.units}".rstrip()
     text = " ".join(repr(value).split())
@@ -62,7 +69,7 @@ def _plain_remedy(kind: Kind) -> str:
     return f"give a quantity or text with its unit, such as '... {kind.unit(system)}'"
 
 
-def _wrong_dimension(kind: Kind, units: Any, shown: str) -> Problem:
+def _wrong_dimension(kind: Kind, units: Any, text: str) -> Problem:
     names = set(dict(units))
     remedy = "use a unit such as " + " or ".join(dict.fromkeys((kind.metric, kind.oilfield)))
     if names & {"darcy", "millidarcy"} and "[time]" in kind.dimension:
@@ -71,15 +78,26 @@ def _wrong_dimension(kind: Kind, units: Any, shown: str) -> Problem:
         remedy += "; a surface volume is not a reservoir volume"
     elif "reservoir" in kind.name:
         remedy += "; a formation volume factor turns surface into reservoir volumes"
+    elif "permeability" in kind.name:
+        remedy += "; permeability_from_conductivity turns a hydraulic conductivity into one"
     for name in names & set(MISTAKEN_ELSEWHERE):
         remedy = MISTAKEN_ELSEWHERE[name]
-    return Problem(UnitsError, kind.name, shown, remedy)
+    return Problem(UnitsError, kind.name, text, remedy)
 
 
-def _check_names(kind: Kind, units: Any, registry: Any, shown: str) -> None:
+def _check_names(kind: Kind, units: Any, registry: Any, text: str) -> None:
     names = set(dict(units))
     for name in names & set(MISTAKEN_ELSEWHERE):
-        raise Problem(UnitsError, kind.name, shown, MISTAKEN_ELSEWHERE[name])
+        raise Problem(UnitsError, kind.name, text, MISTAKEN_ELSEWHERE[name])
+    for name in names & SURFACE_NAMES:
+        if "[standard_volume]" not in dict(registry.get_dimensionality(name)):
+            raise Problem(
+                UnitsError,
+                kind.name,
+                text,
+                f"that registry makes {name!r} a volume at reservoir conditions: leave it "
+                "undefined there and call wellindex.define_units(registry) once",
+            )
     roots = {root for name in names for _, root, _ in registry.parse_unit_name(name)}
     if "barrel" in roots:
         cubic_metres = registry.convert(1.0, registry.UnitsContainer({"barrel": 1}), "meter**3")
@@ -87,24 +105,24 @@ def _check_names(kind: Kind, units: Any, registry: Any, shown: str) -> None:
             raise Problem(
                 UnitsError,
                 kind.name,
-                shown,
+                text,
                 f"that registry's barrel holds {cubic_metres:.5f} m3; the trade's holds 42 "
                 "gallons: write 'oil_barrel' there, or 'rb' or 'stb' here",
             )
 
 
-def _check_zero(kind: Kind, units: Any, shown: str) -> None:
+def _check_zero(kind: Kind, units: Any, text: str) -> None:
     names = set(dict(units))
     if any(name.startswith("delta_") for name in names) and kind.measured_from_zero:
-        raise Problem(UnitsError, kind.name, shown, "this is a difference of two, not a value")
+        raise Problem(UnitsError, kind.name, text, "this is a difference of two, not a value")
     if names & OFFSET_UNITS and kind.measured_from_zero is False:
-        raise Problem(UnitsError, kind.name, shown, "a difference has no gauge: write psi or bar")
+        raise Problem(UnitsError, kind.name, text, "a difference has no gauge: write psi or bar")
 
 
 def parse_unit(text: str) -> Any:
     """Return the unit that a guarded text names; raise `UnitsError`."""
     if not isinstance(text, str):
-        raise UnitsError(f"a unit is a text such as 'mD*ft'; got {_shown(text)}")
+        raise UnitsError(f"a unit is a text such as 'mD*ft'; got {shown(text)}")
     number, units = read_text("1 " + text)
     if number != 1.0 or units is None:
         raise UnitsError(f"{text!r} is not a unit")
@@ -120,6 +138,7 @@ class KindReader:
         self.high = kind.range.high
         self.ours: dict[int, Factor] = {}
         self.others: dict[int, Factor] = {}
+        self.by_value: dict[tuple[Any, Any], float] = {}
 
     def read(self, value: Any) -> Any:
         """Return `value` in SI, unchecked against the range; raise `Problem` otherwise."""
@@ -131,7 +150,7 @@ class KindReader:
         if isinstance(value, str):
             return self._text(value)
         if isinstance(value, (list, tuple)):
-            return self._sequence(value)
+            return self._sequence(value, 1)
         return self._number(value, value)
 
     def read_si(self, value: Any) -> Any:
@@ -171,7 +190,7 @@ class KindReader:
         try:
             number, units = read_text(value)
         except UnitsError as error:
-            raise Problem(UnitsError, self.kind.name, _shown(value), str(error)) from None
+            raise Problem(UnitsError, self.kind.name, shown(value), str(error)) from None
         if units is None:
             return self._number(number, value)
         return self._in_si(number, units, ureg, value)
@@ -191,52 +210,80 @@ class KindReader:
         known = memory.get(id(units))
         if known is not None and known.units is units and known.registry is registry:
             return known
+        recalled = self.recall(units, registry)
+        if recalled is not None:
+            return recalled
         self._check_dimension(units, registry, given)
         try:
             zero, one = (float(registry.convert(x, units, self.kind.si)) for x in (0, 1))
         except (pint.PintError, ArithmeticError) as error:
-            raise Problem(UnitsError, self.kind.name, _shown(given), str(error)) from None
+            raise Problem(UnitsError, self.kind.name, shown(given), str(error)) from None
         if zero != 0.0:
             if not self.kind.measured_from_zero:
-                raise Problem(UnitsError, self.kind.name, _shown(given), _OWN_ZERO)
+                raise Problem(UnitsError, self.kind.name, shown(given), _OWN_ZERO)
             return None
+        if len(self.by_value) >= _REMEMBERED:
+            self.by_value.clear()
+        self.by_value[registry, tuple(units.unit_items())] = one
+        return self._remember(memory, Factor(units, one, registry))
+
+    def _remember(self, memory: dict[int, Factor], factor: Factor) -> Factor:
         if len(memory) >= _REMEMBERED:
             memory.clear()
-        memory[id(units)] = Factor(units, one, registry)
-        return memory[id(units)]
+        memory[id(factor.units)] = factor
+        return factor
+
+    def recall(self, units: Any, registry: Any = ureg) -> Factor | None:
+        """Return the factor of a unit of the same value as one seen before, or None.
+
+        A call looks for a unit's identity first; the value serves units made afresh by
+        arithmetic (150.0 * ureg.ft), each an object of its own.
+        """
+        si = self.by_value.get((registry, tuple(units.unit_items())))
+        if si is None:
+            return None
+        memory = self.ours if registry is ureg else self.others
+        return self._remember(memory, Factor(units, si, registry))
 
     def _check_dimension(self, units: Any, registry: Any, given: Any) -> None:
         try:
             dimension = dict(registry.get_dimensionality(units))
         except (pint.PintError, AttributeError, KeyError) as error:
-            raise Problem(UnitsError, self.kind.name, _shown(given), str(error)) from None
+            raise Problem(UnitsError, self.kind.name, shown(given), str(error)) from None
         if dimension != self.kind.dimension:
-            raise _wrong_dimension(self.kind, units, _shown(given))
+            raise _wrong_dimension(self.kind, units, shown(given))
         angle = self.kind.si == "radian"
         if not self.kind.dimension and angle != bool(ANGLES & set(dict(units))):
             meant = "a plain number is no angle: write degree or radian"
             remedy = meant if angle else "an angle is not what is meant here"
-            raise Problem(UnitsError, self.kind.name, _shown(given), remedy)
+            raise Problem(UnitsError, self.kind.name, shown(given), remedy)
         if registry is not ureg:
-            _check_names(self.kind, units, registry, _shown(given))
-        _check_zero(self.kind, units, _shown(given))
+            _check_names(self.kind, units, registry, shown(given))
+        _check_zero(self.kind, units, shown(given))
 
-    def _sequence(self, value: Any) -> np.ndarray[Any, Any]:
+    def _sequence(self, value: Any, depth: int) -> np.ndarray[Any, Any]:
+        if depth > _DEEPEST_LIST:
+            raise Problem(ShapeError, self.kind.name, "lists in lists in lists", "give an array")
         if not value:
             raise Problem(ShapeError, self.kind.name, "an empty sequence", "give a value")
-        items = [np.asarray(self.read(item)) for item in value]
+        items = [
+            self._sequence(item, depth + 1)
+            if isinstance(item, (list, tuple))
+            else np.asarray(self.read(item))
+            for item in value
+        ]
         if len({item.shape for item in items}) > 1:
-            raise Problem(ShapeError, self.kind.name, _shown(value), "its parts differ in shape")
+            raise Problem(ShapeError, self.kind.name, shown(value), "its parts differ in shape")
         return np.stack(items)
 
     def _number(self, value: Any, given: Any) -> Any:
         number = _floats(value, self.kind, given)
         plain = self.kind.plain
         if plain is None:
-            raise Problem(UnitsError, self.kind.name, _shown(given), _plain_remedy(self.kind))
+            raise Problem(UnitsError, self.kind.name, shown(given), _plain_remedy(self.kind))
         if self.kind.dimension and not np.all((number > plain.low) & (number < plain.high)):
             remedy = f"a plain number must be {plain.words}; otherwise give its unit"
-            raise Problem(DomainError, self.kind.name, _shown(given), remedy)
+            raise Problem(DomainError, self.kind.name, shown(given), remedy)
         return number
 
 
@@ -245,6 +292,7 @@ class EitherReader(KindReader):
 
     def __init__(self, either: Either) -> None:
         super().__init__(either.first)
+        self.either = either  # kept: readers go by the identity of what they read
         self.readers = (KindReader(either.first), KindReader(either.second))
 
     def read(self, value: Any) -> Any:
@@ -271,7 +319,7 @@ def _floats(value: Any, kind: Kind, given: Any) -> Any:
     """Return a float or a float64 array; refuse everything that only looks like one."""
 
     def refused(remedy: str) -> Problem:
-        return Problem(UnitsError, kind.name, _shown(given), remedy)
+        return Problem(UnitsError, kind.name, shown(given), remedy)
 
     if isinstance(value, (bool, np.bool_)):
         raise refused("a boolean is no quantity")

@@ -34,16 +34,15 @@ def current() -> UnitSystem:
     return _in_force.get() or _notebook_choice[0]
 
 
-def _chosen(name: str, site_pressure: Quantity | str | None) -> UnitSystem:
+def _chosen(name: str, site_pressure: Quantity | str | None, otherwise: float) -> UnitSystem:
     for known in SYSTEMS:
         if known == name:
-            return UnitSystem(known, _site_pressure(site_pressure))
+            given = site_pressure is not None
+            return UnitSystem(known, _site_pressure(site_pressure) if given else otherwise)
     raise DomainError(f"unknown unit system {name!r}; one of {', '.join(SYSTEMS)}")
 
 
 def _site_pressure(given: Quantity | str | None) -> float:
-    if given is None:
-        return STANDARD_ATMOSPHERE
     if isinstance(given, str):
         given = ureg.Quantity(*read_text(given))
     if (
@@ -76,8 +75,8 @@ def unit_system(
         metric: m, mD, bar, cP, m3/day; oilfield: ft, mD, psi, cP, rb/day and stb/day;
         si: m, m2, Pa, Pa s, m3/s; darcy: cm, D, atm, cP, cm3/s.
     site_pressure : Quantity or str, pressure, optional
-        Air pressure at the site, which turns psig and barg into absolute pressure.
-        Default: one standard atmosphere.
+        Air pressure at the site, which turns psig and barg into absolute pressure. Default: the
+        one in force, which is one standard atmosphere where none was ever given.
 
     Raises
     ------
@@ -92,7 +91,7 @@ def unit_system(
     >>> print(f"{r0:.3f}")
     19.851 ft
     """
-    token = _in_force.set(_chosen(name, site_pressure))
+    token = _in_force.set(_chosen(name, site_pressure, current().site_pressure))
     try:
         yield current()
     finally:
@@ -104,8 +103,10 @@ def set_unit_system(name: SystemName, *, site_pressure: Quantity | str | None = 
 
     Parameters
     ----------
-    name, site_pressure
+    name : {"metric", "oilfield", "si", "darcy"}
         As for `unit_system`.
+    site_pressure : Quantity or str, pressure, optional
+        As for `unit_system`; default one standard atmosphere.
 
     Raises
     ------
@@ -117,4 +118,4 @@ def set_unit_system(name: SystemName, *, site_pressure: Quantity | str | None = 
     >>> from wellindex import set_unit_system
     >>> set_unit_system("metric")
     """
-    _notebook_choice[0] = _chosen(name, site_pressure)
+    _notebook_choice[0] = _chosen(name, site_pressure, STANDARD_ATMOSPHERE)

@@ -43,7 +43,8 @@ def _refuse(text: str, why: str) -> UnitsError:
     return UnitsError(f"cannot read {shown!r} as a quantity or unit: {why}")
 
 
-def _nearest(name: str, known: Collection[str]) -> str:
+def nearest(name: str, known: Collection[str]) -> str:
+    """Return "; did you mean ...?" with the known name most like `name`, or nothing."""
     from difflib import get_close_matches
 
     close = get_close_matches(name, known, n=1, cutoff=0.6)
@@ -58,7 +59,7 @@ def _check_name(name: str, text: str, known: Callable[[], Collection[str]]) -> s
     powered = _POWERED.fullmatch(name)
     if powered:
         return f"({powered['base']}**{powered['power']})"
-    raise _refuse(text, f"unknown unit {name!r}{_nearest(name, known())}")
+    raise _refuse(text, f"unknown unit {name!r}{nearest(name, known())}")
 
 
 class _Grammar:

@@ -1,0 +1,59 @@
+"""What around a block the closed form does not know: sides of the grid, unequal neighbours."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import numpy as np
+
+from wellindex.space.grid import AXES, SIDES, TensorGrid
+
+Array = np.ndarray[Any, Any]
+
+#: Neighbours whose width differs by more than this factor are unequal.
+_EQUAL = 1.05
+
+
+def surroundings(
+    cells: Array, grid: TensorGrid, directions: list[str], placement: str
+) -> list[str]:
+    """Return one note per block that a well crosses; empty where all is as assumed."""
+    return [
+        "; ".join(_of_block(tuple(cell), grid, direction, placement))
+        for cell, direction in zip(cells.tolist(), directions, strict=True)
+    ]
+
+
+def _of_block(cell: tuple[int, ...], grid: TensorGrid, direction: str, placement: str) -> list[str]:
+    ends: list[str] = []
+    uneven: list[str] = []
+    for axis, name in enumerate(AXES):
+        if name == direction:
+            continue
+        own = grid.widths(axis)[cell[axis]]
+        worst = 1.0
+        for side, step in zip(SIDES[name], (-1, 1), strict=True):
+            beside = [*cell]
+            beside[axis] += step
+            if not grid.has(tuple(beside)):
+                if placement not in (side, "corner"):
+                    ends.append(side)
+                continue
+            ratio = grid.widths(axis)[beside[axis]] / own
+            worst = max(worst, ratio, 1.0 / ratio)
+        if worst > _EQUAL:
+            uneven.append(f"d{name} of a neighbour differs by a factor of {worst:.3g}")
+    notes = [f"no block to the {' and '.join(ends)}: the formula assumes one"] if ends else []
+    if uneven:
+        notes.append(f"{' and '.join(uneven)}: the formula assumes equal blocks")
+    return notes
+
+
+def off_side(midpoints: Array, cells: Array, grid: TensorGrid, side: str) -> Array:
+    """Return which rows do not run on the named side of their block, (n,)."""
+    axis = next(a for a, name in enumerate(AXES) if side in SIDES[name])
+    faces = grid.edges()[axis]
+    number = cells[:, axis] + SIDES[AXES[axis]].index(side)
+    slack = 1e-6 * grid.widths(axis)[cells[:, axis]]
+    off: Array = np.abs(midpoints[:, axis] - faces[number]) > slack
+    return off
