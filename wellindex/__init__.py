@@ -21,6 +21,8 @@ from wellindex.fluid import Liquid
 from wellindex.index import productivity_index, well_index
 from wellindex.profile import RadialProfile, radial_profile
 from wellindex.radius.closed_form import equivalent_radius, equivalent_wellbore_radius
+from wellindex.radius.voronoi import voronoi_equivalent_radius
+from wellindex.recognise import Comparison, Match, compare, recognise
 from wellindex.rock import Permeability, permeability_from_conductivity
 from wellindex.space.crossing import Crossings, cross
 from wellindex.space.grid import TensorGrid
@@ -41,12 +43,14 @@ __all__ = [
     "AssumptionWarning",
     "BackflowWarning",
     "CaseError",
+    "Comparison",
     "Convention",
     "Couplings",
     "Crossings",
     "DomainError",
     "HexahedralGrid",
     "Liquid",
+    "Match",
     "Path",
     "Permeability",
     "Quantity",
@@ -59,6 +63,7 @@ __all__ = [
     "WellIndexError",
     "WellState",
     "Workings",
+    "compare",
     "couple",
     "cross",
     "define_units",
@@ -67,9 +72,11 @@ __all__ = [
     "permeability_from_conductivity",
     "productivity_index",
     "radial_profile",
+    "recognise",
     "set_unit_system",
     "unit_system",
     "ureg",
+    "voronoi_equivalent_radius",
     "well_index",
     "workings",
 ]

@@ -254,6 +254,13 @@ class Convention:
         si = given["number"] * _si_value(self.unit) * self._factor(powers, given)
         return si / _si_value(to.unit)
 
+    def per_index(self, data: dict[str, Any], length: float) -> float:
+        """Return the number over the well index, both plain, from what it contains in SI."""
+        contents = {"two_pi": 2.0 * math.pi, "gravity": STANDARD_GRAVITY, "length": length}
+        given = {"relative_permeability": 1.0, **data, **contents}
+        needed = {name: power for name, power in self._powers().items() if power}
+        return float(self._factor(needed, given)) / _si_value(self.unit)
+
     def _factor(self, powers: dict[str, float], data: dict[str, Any]) -> Any:
         missing = [name for name, power in powers.items() if power and data[name] is None]
         if missing:
