@@ -12,6 +12,8 @@ Array = np.ndarray[Any, Any]
 _SPAN = 4
 #: A level of this many boxes is looked at whole.
 _FEW = 64
+#: A line that moves less than this along an axis stands still, in metres.
+_STILL = 1e-200
 
 
 class BoxTree:
@@ -80,8 +82,8 @@ def _children(nodes: Array, shape: tuple[int, ...]) -> Array:
 def _met(start: Array, stop: Array, low: Array, high: Array) -> Array:
     """Return which boxes (n, 3) the line between two points meets (the slab test)."""
     along = stop - start
-    moving = along != 0.0
-    still = np.all((low <= start) & (start <= high) | moving, axis=1)
+    moving = np.abs(along) > _STILL
+    still = np.all((low <= start) & (start <= high) | moving & (low <= high), axis=1)
     inverse = 1.0 / along[moving]
     one = (low[:, moving] - start[moving]) * inverse
     other = (high[:, moving] - start[moving]) * inverse

@@ -18,6 +18,17 @@ AXES = ("x", "y", "z")
 SIDES = {"x": ("west", "east"), "y": ("south", "north"), "z": ("top", "bottom")}
 
 
+def one_cell(cell: Any, shape: tuple[int, int, int]) -> np.ndarray[Any, Any]:
+    """Return the indices of a block that a grid of this shape has, (1, 3)."""
+    indices = np.asarray(cell)
+    if indices.shape != (3,) or indices.dtype.kind not in "iu":
+        raise ShapeError(f"a block is three whole numbers (i, j, k); got {cell!r}")
+    for axis, index, count in zip("ijk", cell, shape, strict=True):
+        if not 0 <= index < count:
+            raise DomainError(f"{axis} = {index} is outside the grid: 0 to {count - 1}")
+    return indices[np.newaxis]
+
+
 class TensorGrid:
     """Blocks of dx by dy by dz, x to the east, y to the north, z downwards.
 
@@ -130,13 +141,7 @@ class TensorGrid:
         DomainError
             The grid has no such block.
         """
-        indices = np.asarray(cell)
-        if indices.shape != (3,) or indices.dtype.kind not in "iu":
-            raise ShapeError(f"a block is three whole numbers (i, j, k); got {cell!r}")
-        for axis, index, count in zip("ijk", cell, self.shape, strict=True):
-            if not 0 <= index < count:
-                raise DomainError(f"{axis} = {index} is outside the grid: 0 to {count - 1}")
-        return as_quantity(kinds.COORDINATE, self.centres(np.array([cell]))[0])
+        return as_quantity(kinds.COORDINATE, self.centres(one_cell(cell, self.shape))[0])
 
     def centres(self, cells: np.ndarray[Any, Any]) -> np.ndarray[Any, Any]:
         """Return the centres of some cells in SI, (n, 3)."""

@@ -8,6 +8,7 @@ import numpy as np
 
 from wellindex.errors import DomainError, ShapeError
 from wellindex.space.box_tree import BoxTree
+from wellindex.space.grid import one_cell
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
@@ -128,7 +129,8 @@ class HexahedralGrid:
         folded = np.zeros(len(exists), dtype=bool)
         for start in range(0, len(exists), _CHUNK):
             part = slice(start, start + _CHUNK)
-            cells = self._corners[part]
+            # Seen from a corner: coordinates far from zero would cost digits.
+            cells = self._corners[part] - self._corners[part, :1]
             # The Jacobian is quadratic along each axis, so two Gauss points give it exactly.
             volume = _jacobians(cells, gauss).mean(axis=0)
             box = np.ptp(cells, axis=1).prod(axis=1)
@@ -226,8 +228,15 @@ class HexahedralGrid:
         ----------
         cell : tuple of int
             (i, j, k), from 0.
+
+        Raises
+        ------
+        ShapeError
+            A cell that is not three whole numbers.
+        DomainError
+            The grid has no such cell.
         """
-        return as_quantity(kinds.COORDINATE, self.centres(np.array([cell]))[0])
+        return as_quantity(kinds.COORDINATE, self.centres(one_cell(cell, self.shape))[0])
 
     def __repr__(self) -> str:
         return "HexahedralGrid({} x {} x {} cells)".format(*self.shape)

@@ -34,7 +34,9 @@ def hexahedral_pieces(start: Array, stop: Array, grid: HexahedralGrid) -> Pieces
         return Pieces(np.empty((0, 3), dtype=np.int64), np.empty(0), np.empty(0), [])
     order = np.argsort(grid.number(cells))
     cells = cells[order]
-    corners = grid.corners(cells)
+    # Seen from the leg: coordinates far from zero (a map's) would cost digits.
+    corners = grid.corners(cells) - start
+    start, stop = np.zeros(3), stop - start
     cuts = _cuts(start, stop, corners)
     middles = start + (0.5 * (cuts[1:] + cuts[:-1]))[:, np.newaxis] * (stop - start)
     owners, also = _owners(middles, corners)

@@ -46,11 +46,6 @@ class Path:
         points = np.asarray(points)
         if points.ndim != 2 or points.shape[1] != 3:
             raise ShapeError(f"Path(): points have the shape (n, 3); got {points.shape}")
-        if np.ndim(measured_depth):
-            raise ShapeError(
-                "Path(): measured_depth is one value, at the first point; got "
-                f"{np.shape(measured_depth)}"
-            )
         if len(points) < 2:
             raise DomainError("Path(): a path has at least two points")
         legs = np.sqrt(np.sum(np.diff(points, axis=0) ** 2, axis=1))

@@ -24,6 +24,8 @@ Array = np.ndarray[Any, Any]
 CHORD_TOLERANCE = 0.01
 #: A dogleg this near to 180 degrees has no plane to turn in.
 _NO_PLANE = 1e-6
+#: A measured depth beyond the ends by this part of it is at the end, in other units.
+_ROUNDING = 1e-12
 _COLUMNS = ("measured_depth", "inclination", "azimuth")
 
 
@@ -189,16 +191,20 @@ class Survey:
         DomainError
             A missing column, or a value that is no number; the row is named.
         """
-        with open(path, encoding="utf-8-sig", newline="") as file:
-            rows = [row for row in csv.reader(file) if any(cell.strip() for cell in row)]
         name = FilePath(path).name
+        try:
+            with open(path, encoding="utf-8-sig", newline="") as file:
+                lines = list(enumerate(csv.reader(file), 1))
+        except (UnicodeDecodeError, csv.Error) as error:
+            raise DomainError(f"{name}: the file is no CSV text in UTF-8: {error}") from None
+        rows = [(n, row) for n, row in lines if any(cell.strip() for cell in row)]
         if not rows:
             raise DomainError(f"{name}: the file is empty")
         columns = {}
         for wanted in _COLUMNS:
-            index, unit = _find_column(rows[0], wanted, name)
-            values = [_number(row, index, wanted, n, name) for n, row in enumerate(rows[1:], 2)]
-            columns[wanted] = ureg.Quantity(np.array(values), parse_unit(unit))
+            index, unit = _find_column(rows[0][1], wanted, name)
+            values = [_number(row, index, wanted, n, name) for n, row in rows[1:]]
+            columns[wanted] = ureg.Quantity(np.array(values), unit)
         return cls(**columns, **options)
 
     @property
@@ -280,10 +286,12 @@ class Survey:
 
     @reads
     def _at(self, *, measured_depth: kinds.Coordinate) -> tuple[Array, Array]:
-        depth = np.asarray(measured_depth)
-        if np.any((depth < self._md[0]) | (depth > self._md[-1])):
+        first, last = self._md[0], self._md[-1]
+        slack = _ROUNDING * max(abs(first), abs(last))
+        if np.any((measured_depth < first - slack) | (measured_depth > last + slack)):
             ends = as_quantity(kinds.COORDINATE, self._md[[0, -1]])
             raise DomainError(f"Survey: a measured depth lies outside the survey, {ends}")
+        depth = np.clip(measured_depth, first, last)
         n = np.clip(np.searchsorted(self._md, depth, side="right") - 1, 0, len(self._md) - 2)
         return self._legs.at(n, (depth - self._md[n]) / self._legs.length[n])
 
@@ -291,24 +299,31 @@ class Survey:
         return f"Survey({len(self._md)} stations)"
 
 
-def _find_column(header: list[str], wanted: str, name: str) -> tuple[int, str]:
-    for index, title in enumerate(header):
-        words, bracket, unit = title.strip().partition("[")
-        if words.strip() == wanted:
-            if not bracket or not unit.endswith("]"):
-                raise UnitsError(
-                    f"{name}: column {wanted!r} has no unit; write it in the header, such as "
-                    f"'{wanted} [{'ft' if wanted == 'measured_depth' else 'degree'}]'"
-                )
-            return index, unit[:-1]
-    found = ", ".join(repr(title.strip()) for title in header)
-    raise DomainError(f"{name}: no column {wanted!r} in the header; it has {found}")
+def _find_column(header: list[str], wanted: str, name: str) -> tuple[int, Any]:
+    """Return the place of a column and its unit."""
+    titles = [title.strip().partition("[") for title in header]
+    places = [index for index, (words, _, _) in enumerate(titles) if words.strip() == wanted]
+    if not places:
+        found = ", ".join(repr(title.strip()) for title in header)
+        raise DomainError(f"{name}: no column {wanted!r} in the header; it has {found}")
+    if len(places) > 1:
+        raise DomainError(f"{name}: column {wanted!r} stands twice in the header")
+    _words, bracket, unit = titles[places[0]]
+    if not bracket or not unit.endswith("]"):
+        raise UnitsError(
+            f"{name}: column {wanted!r} has no unit; write it in the header, such as "
+            f"'{wanted} [{'ft' if wanted == 'measured_depth' else 'degree'}]'"
+        )
+    try:
+        return places[0], parse_unit(unit[:-1])
+    except UnitsError as error:
+        raise UnitsError(f"{name}: column {wanted!r}: {error}") from None
 
 
 def _number(row: list[str], index: int, column: str, line: int, name: str) -> float:
     text = row[index].strip() if index < len(row) else ""
     try:
-        number = float(text)
+        number = float(text) if text.isascii() and "_" not in text else math.nan
     except ValueError:
         number = math.nan
     if not math.isfinite(number):
