@@ -19,7 +19,15 @@ from wellindex.units.registry import Quantity, ureg
 
 _Dimension = dict[str, float]
 
-_FLAGS = ("two_pi", "viscosity", "formation_volume_factor", "mass", "head", "per_length")
+_FLAGS = (
+    "two_pi",
+    "viscosity",
+    "formation_volume_factor",
+    "mass",
+    "head",
+    "per_length",
+    "skin_inside",
+)
 
 _DIMENSIONS: dict[str, _Dimension] = {
     "two_pi": {},
@@ -47,7 +55,7 @@ class Contents(TypedDict, total=False):
 def _read_contents(
     *,
     wi: kinds.WellIndex | None = None,
-    number: kinds.Scale | None = None,
+    number: kinds.Number | None = None,
     viscosity: kinds.Viscosity | None = None,
     relative_permeability: kinds.Fraction = 1.0,
     formation_volume_factor: kinds.LiquidVolumeFactor | None = None,
@@ -91,13 +99,22 @@ class Convention:
         Whether it multiplies a difference of head in place of pressure: a conductance (m2/day).
     per_length : bool
         Whether it is divided by the open length.
+    skin_inside : bool
+        Whether it contains the skin; if not, a table has skin and wellbore radius beside it.
+    first_index : int
+        Number of the first block along each axis, 0 or 1. Default 0.
+    order : str
+        Order of the block indices in a table: "ijk" or any other order of the three letters.
+    sign : int
+        1, or -1 where the code counts rates into the ground as positive.
 
     Raises
     ------
     UnitsError
         A unit whose dimension does not fit what the number contains.
     DomainError
-        Fields that exclude each other: a surface volume is no mass.
+        Fields that exclude each other: a surface volume is no mass. A first index, an order or a
+        sign that is none.
 
     Examples
     --------
@@ -118,8 +135,16 @@ class Convention:
     mass: bool = False
     head: bool = False
     per_length: bool = False
+    skin_inside: bool = True
+    first_index: int = 0
+    order: str = "ijk"
+    sign: int = 1
 
     def __post_init__(self) -> None:
+        if self.first_index not in (0, 1) or self.sign not in (1, -1):
+            raise DomainError("Convention(): first_index is 0 or 1, sign is 1 or -1")
+        if sorted(self.order) != ["i", "j", "k"]:
+            raise DomainError("Convention(): order holds each of i, j and k once")
         for name in _FLAGS:
             if not isinstance(getattr(self, name), bool):
                 raise UnitsError(f"Convention(): {name} is True or False")
@@ -197,7 +222,7 @@ class Convention:
             Something that the number contains is not given; the message says what.
         """
         given = _read_contents(wi=wi, **data)
-        return given["wi"] * self._factor(self._powers(), given) / _si_value(self.unit)
+        return self.sign * given["wi"] * self._factor(self._powers(), given) / _si_value(self.unit)
 
     def well_index(self, number: Any, **data: Unpack[Contents]) -> Quantity:
         """Return the well index of this package behind a number in this convention.
@@ -222,7 +247,7 @@ class Convention:
         """
         given = _read_contents(number=number, **data)
         powers = {name: -power for name, power in self._powers().items()}
-        si = given["number"] * _si_value(self.unit) * self._factor(powers, given)
+        si = self._unsigned(given["number"]) * _si_value(self.unit) * self._factor(powers, given)
         return as_quantity(kinds.WELL_INDEX, si)
 
     def convert(self, number: Any, to: Convention, **data: Unpack[Contents]) -> Any:
@@ -251,8 +276,16 @@ class Convention:
         given = _read_contents(number=number, **data)
         ours = self._powers()
         powers = {name: power - ours[name] for name, power in to._powers().items()}
-        si = given["number"] * _si_value(self.unit) * self._factor(powers, given)
-        return si / _si_value(to.unit)
+        si = self._unsigned(given["number"]) * _si_value(self.unit) * self._factor(powers, given)
+        return to.sign * si / _si_value(to.unit)
+
+    def _unsigned(self, number: Any) -> Any:
+        """Return a number as a positive index; refuse one with the sign against the convention."""
+        unsigned = self.sign * number
+        if np.any(unsigned < 0.0):
+            sign = "positive" if self.sign > 0 else "negative"
+            raise DomainError(f"Convention(): a number in this convention is zero or {sign}")
+        return unsigned
 
     def per_index(self, data: dict[str, Any], length: float) -> float:
         """Return the number over the well index, both plain, from what it contains in SI."""

@@ -3,16 +3,21 @@
 from __future__ import annotations
 
 import os
-from typing import Any, NamedTuple
+from importlib import import_module
+from typing import Any, NamedTuple, Unpack
 
 import numpy as np
 
-from wellindex.index import geometric_index
+from wellindex.convention import Contents, Convention
+from wellindex.errors import ShapeError
+from wellindex.index import flow_resistance, geometric_index
 from wellindex.radius.crossed_block import Crossed
 from wellindex.space.grid import AXES
-from wellindex.table import Column, aligned, as_csv, as_json, measured
+from wellindex.table import Column, Table, aligned, header, measured
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity, number_in
+from wellindex.units.boundary import reads
+from wellindex.units.checks import AT_ONCE
 from wellindex.units.elementwise import frozen
 from wellindex.units.registry import Quantity
 
@@ -238,8 +243,7 @@ class Couplings:
         path : str or path
             The file to write; one that exists is replaced.
         """
-        with open(path, "w", encoding="utf-8", newline="") as file:
-            file.write(as_csv(self.columns()))
+        Table(self.columns()).to_csv(path)
 
     def to_json(self, path: str | os.PathLike[str]) -> None:
         """Write the table as JSON in the unit system in force: per column, unit and values.
@@ -249,8 +253,133 @@ class Couplings:
         path : str or path
             The file to write; one that exists is replaced.
         """
-        with open(path, "w", encoding="utf-8") as file:
-            file.write(as_json(self.columns()))
+        Table(self.columns()).to_json(path)
+
+    def to_array(self) -> Array:
+        """Return the table as a numpy structured array, in the unit system in force."""
+        columns = self.columns()
+        kinds_of = {"i": "i8", "j": "i8", "k": "i8", "note": "U200"}
+        array = np.empty(len(self), dtype=[(c.name, kinds_of.get(c.name, "f8")) for c in columns])
+        for column in columns:
+            array[column.name] = column.values
+        return array
+
+    def to_pandas(self) -> Any:
+        """Return the table as a pandas DataFrame whose column names carry the units.
+
+        Raises
+        ------
+        ImportError
+            pandas is not installed.
+        """
+        pandas = import_module("pandas")
+        return pandas.DataFrame({header(column): column.values for column in self.columns()})
+
+    def in_convention(self, convention: Convention, **data: Unpack[Contents]) -> Table:
+        """Return the table that another code takes, its numbers in that code's convention.
+
+        Parameters
+        ----------
+        convention : Convention
+            What the number contains, where indices start, in which order, with which sign.
+        **data
+            What the number contains and the well index does not; see `Convention.number`.
+
+        Returns
+        -------
+        Table
+            Block indices and ``number``, with rw and skin beside it where it holds no skin.
+
+        Raises
+        ------
+        UnitsError
+            Something that the number contains is not given.
+        DomainError
+            An index whose skin cannot be taken out.
+
+        Examples
+        --------
+        >>> from wellindex import Convention, Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> print(rows.in_convention(Convention("mD*m", first_index=1)))
+        i  j  k   number
+                  [mD*m]
+        -  -  -  -------
+        2  2  1  1068.81
+        """
+        if "length" not in data:
+            data["length"] = self.length
+        table = self if convention.skin_inside else self.with_skin(0.0)
+        numbers = np.atleast_1d(convention.number(table.wi, **data))
+        cells = {n: self._rows.cell[:, a] + convention.first_index for a, n in enumerate("ijk")}
+        columns = [Column(n, "", cells[n].tolist()) for n in convention.order]
+        columns.append(Column("number", convention.unit, numbers.tolist()))
+        if not convention.skin_inside:
+            columns.append(measured("rw", kinds.LENGTH, self._rows.rw))
+            columns.append(Column("skin", "", self._rows.skin.tolist()))
+        return Table(columns)
+
+    def __getitem__(self, rows: Any) -> Couplings:
+        """Return some rows: a slice, an array of row numbers or of bool, or one row number."""
+        index = np.atleast_1d(np.arange(len(self))[rows])
+        crossed = self._crossed
+        return Couplings(
+            Rows(*(column[index] for column in self._rows)),
+            crossed=crossed._replace(
+                components=crossed.components[index],
+                sizes=crossed.sizes[:, index],
+                k=crossed.k[:, index],
+            ),
+            method=self._method,
+            notes=[self._notes[n] for n in index],
+        )
+
+    def scaled(self, factor: Any) -> Couplings:
+        """Return the table with each row's scale multiplied (measured over computed).
+
+        Parameters
+        ----------
+        factor : float or array, (n,)
+            Zero or positive.
+
+        Raises
+        ------
+        DomainError, ShapeError
+            A negative factor; neither one factor nor one per row.
+        """
+        scaled: Couplings = self._with(factor=factor)
+        return scaled
+
+    def with_skin(self, skin: Any) -> Couplings:
+        """Return the table with another skin; the equivalent radii stay.
+
+        Parameters
+        ----------
+        skin : float or array, (n,)
+            Local skin of each row.
+
+        Raises
+        ------
+        DomainError, ShapeError
+            ln(r0/rw) + skin not positive; neither one skin nor one per row.
+        """
+        changed: Couplings = self._with(skin=skin)
+        return changed
+
+    @reads
+    def _with(self, *, factor: kinds.Scale | None = None, skin: kinds.Skin | None = None) -> Any:
+        rows = self._rows
+        for name, value in (("factor", factor), ("skin", skin)):
+            if isinstance(value, np.ndarray) and value.shape != (len(self),):
+                raise ShapeError(f"{name} is one value, or one per row ({len(self)})")
+        if factor is not None:
+            rows = rows._replace(scale=rows.scale * factor)
+        if skin is not None:
+            rows = rows._replace(skin=np.broadcast_to(skin, len(self)))
+            flow_resistance(AT_ONCE, rows.r0, rows.rw, rows.skin, rows.k_normal)
+        return Couplings(rows, crossed=self._crossed, method=self._method, notes=self.notes)
 
     def __str__(self) -> str:
         return self.table()

@@ -105,7 +105,7 @@ def _recipes(
 
 def _conventions(data: dict[str, Any]) -> Iterator[Convention]:
     """Yield every content that the data allow, in common units, with and without 2 pi."""
-    contents: list[tuple[str, dict[str, bool]]] = [("plain", {})]
+    contents: list[tuple[str, dict[str, Any]]] = [("plain", {})]
     if "viscosity" in data:
         contents.append(("viscosity", {"viscosity": True}))
         if "formation_volume_factor" in data:

@@ -6,6 +6,7 @@ import csv
 import io
 import json
 import math
+import os
 from collections.abc import Sequence
 from typing import Any, NamedTuple
 
@@ -21,6 +22,38 @@ class Column(NamedTuple):
     name: str
     unit: str
     values: Sequence[Any]
+
+
+class Table:
+    """Columns that print aligned and write as CSV or JSON.
+
+    Attributes
+    ----------
+    columns : tuple of Column
+        Name, unit and values of each column.
+    """
+
+    def __init__(self, columns: Sequence[Column]) -> None:
+        self.columns = tuple(columns)
+
+    def to_csv(self, path: str | os.PathLike[str]) -> None:
+        """Write the columns as CSV; the header carries the units. A file there is replaced."""
+        with open(path, "w", encoding="utf-8", newline="") as file:
+            file.write(as_csv(self.columns))
+
+    def to_json(self, path: str | os.PathLike[str]) -> None:
+        """Write the columns as JSON: per column, unit and values. A file there is replaced."""
+        with open(path, "w", encoding="utf-8") as file:
+            file.write(as_json(self.columns))
+
+    def __getitem__(self, name: str) -> list[Any]:
+        for column in self.columns:
+            if column.name == name:
+                return list(column.values)
+        raise KeyError(name)
+
+    def __str__(self) -> str:
+        return aligned(self.columns)
 
 
 def measured(name: str, kind: Kind, values: np.ndarray[Any, Any]) -> Column:
