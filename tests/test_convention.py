@@ -24,7 +24,7 @@ from wellindex import (
     well_index,
 )
 
-FIELDS = [field.name for field in fields(Convention) if field.name != "unit"]
+FIELDS = [f.name for f in fields(Convention) if f.type == "bool" and f.name != "skin_inside"]
 FACTORS = {
     "viscosity": "/(Pa*s)",
     "formation_volume_factor": "*sm3/m**3",
