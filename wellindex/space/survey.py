@@ -2,21 +2,21 @@
 
 from __future__ import annotations
 
-import csv
 import math
 import os
+from collections.abc import Iterable
 from pathlib import Path as FilePath
 from typing import Any, NamedTuple
 
 import numpy as np
 
-from wellindex.errors import DomainError, ShapeError, UnitsError
+from wellindex.errors import DomainError, ShapeError
 from wellindex.space.path import Path
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
-from wellindex.units.reading import parse_unit
-from wellindex.units.registry import Quantity, ureg
+from wellindex.units.columns import read_columns
+from wellindex.units.registry import Quantity
 
 Array = np.ndarray[Any, Any]
 
@@ -26,7 +26,7 @@ CHORD_TOLERANCE = 0.01
 _NO_PLANE = 1e-6
 #: A measured depth beyond the ends by this part of it is at the end, in other units.
 _ROUNDING = 1e-12
-_COLUMNS = ("measured_depth", "inclination", "azimuth")
+_COLUMNS = {"measured_depth": "ft", "inclination": "degree", "azimuth": "degree"}
 
 
 def _sine_ratio(part: Array, angle: Array) -> Array:
@@ -191,21 +191,13 @@ class Survey:
         DomainError
             A missing column, or a value that is no number; the row is named.
         """
-        name = FilePath(path).name
-        try:
-            with open(path, encoding="utf-8-sig", newline="") as file:
-                lines = list(enumerate(csv.reader(file), 1))
-        except (UnicodeDecodeError, csv.Error) as error:
-            raise DomainError(f"{name}: the file is no CSV text in UTF-8: {error}") from None
-        rows = [(n, row) for n, row in lines if any(cell.strip() for cell in row)]
-        if not rows:
-            raise DomainError(f"{name}: the file is empty")
-        columns = {}
-        for wanted in _COLUMNS:
-            index, unit = _find_column(rows[0][1], wanted, name)
-            values = [_number(row, index, wanted, n, name) for n, row in rows[1:]]
-            columns[wanted] = ureg.Quantity(np.array(values), unit)
-        return cls(**columns, **options)
+        with open(path, encoding="utf-8-sig", newline="") as file:
+            return cls.from_lines(file, FilePath(path).name, **options)
+
+    @classmethod
+    def from_lines(cls, lines: Iterable[str], name: str, **options: Any) -> Survey:
+        """Read a survey from the lines of such a file; `name` is for messages."""
+        return cls(**read_columns(lines, name, _COLUMNS), **options)
 
     @property
     def measured_depth(self) -> Quantity:
@@ -231,8 +223,8 @@ class Survey:
     def path(self) -> Path:
         """The path as chords that stay within the chord tolerance of the arcs."""
         depths, points = [self._md[:1]], [self._points[:1]]
-        for n, (angle, length) in enumerate(zip(self._legs.angle, self._legs.length, strict=True)):
-            parts = np.arange(1, self._chords(angle, length) + 1) / self._chords(angle, length)
+        for n, (count, length) in enumerate(zip(self.chords, self._legs.length, strict=True)):
+            parts = np.arange(1, int(count) + 1) / count
             position, _direction = self._legs.at(np.full(len(parts), n), parts)
             position[-1] = self._points[n + 1]
             points.append(position)
@@ -242,9 +234,12 @@ class Survey:
             measured_depth=as_quantity(kinds.COORDINATE, np.concatenate(depths), "si"),
         )
 
-    def _chords(self, angle: float, length: float) -> int:
-        """Return how many chords keep within the tolerance: sagitta = length angle/8 n^2."""
-        return max(1, math.ceil(math.sqrt(length * angle / (8.0 * self._tolerance))))
+    @property
+    def chords(self) -> Array:
+        """How many chords `path` has in each leg, (n - 1,): sagitta = length angle / 8 n^2."""
+        sagitta = self._legs.length * self._legs.angle / (8.0 * self._tolerance)
+        counts: Array = np.maximum(np.ceil(np.sqrt(sagitta)), 1.0)
+        return counts
 
     def position(self, measured_depth: Quantity | str) -> Quantity:
         """Return the position (x, y, z) at any measured depth.
@@ -297,35 +292,3 @@ class Survey:
 
     def __repr__(self) -> str:
         return f"Survey({len(self._md)} stations)"
-
-
-def _find_column(header: list[str], wanted: str, name: str) -> tuple[int, Any]:
-    """Return the place of a column and its unit."""
-    titles = [title.strip().partition("[") for title in header]
-    places = [index for index, (words, _, _) in enumerate(titles) if words.strip() == wanted]
-    if not places:
-        found = ", ".join(repr(title.strip()) for title in header)
-        raise DomainError(f"{name}: no column {wanted!r} in the header; it has {found}")
-    if len(places) > 1:
-        raise DomainError(f"{name}: column {wanted!r} stands twice in the header")
-    _words, bracket, unit = titles[places[0]]
-    if not bracket or not unit.endswith("]"):
-        raise UnitsError(
-            f"{name}: column {wanted!r} has no unit; write it in the header, such as "
-            f"'{wanted} [{'ft' if wanted == 'measured_depth' else 'degree'}]'"
-        )
-    try:
-        return places[0], parse_unit(unit[:-1])
-    except UnitsError as error:
-        raise UnitsError(f"{name}: column {wanted!r}: {error}") from None
-
-
-def _number(row: list[str], index: int, column: str, line: int, name: str) -> float:
-    text = row[index].strip() if index < len(row) else ""
-    try:
-        number = float(text) if text.isascii() and "_" not in text else math.nan
-    except ValueError:
-        number = math.nan
-    if not math.isfinite(number):
-        raise DomainError(f"{name}, row {line}: {column} is no number: {text!r}")
-    return number
