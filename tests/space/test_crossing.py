@@ -11,7 +11,8 @@ from hypothesis import strategies as st
 
 from tests.builders import blocks_of, metres, route
 from wellindex import Path, TensorGrid
-from wellindex.space.crossing import Crossings, crossings, onto_faces
+from wellindex.space.crossing import Rows, crossings
+from wellindex.space.tensor_crossing import onto_faces
 
 Point = tuple[float, float, float]
 SPANS = st.lists(st.floats(0.5, 40.0), min_size=1, max_size=4)
@@ -44,13 +45,13 @@ def by_clipping(path: Path, grid: TensorGrid) -> dict[tuple[int, ...], float]:
     return lengths
 
 
-def whole(path: Path, grid: TensorGrid) -> Crossings:
+def whole(path: Path, grid: TensorGrid) -> Rows:
     """The crossings of a path that is open everywhere."""
     depths = path.measured_depth.m_as("m")
-    return crossings(path, grid, np.array([[depths[0], depths[-1]]]))
+    return crossings(path, grid, np.array([[depths[0], depths[-1]]])).in_si()
 
 
-def by_cell(found: Crossings) -> dict[tuple[int, ...], float]:
+def by_cell(found: Rows) -> dict[tuple[int, ...], float]:
     """Length per block."""
     lengths: dict[tuple[int, ...], float] = defaultdict(float)
     for cell, length in zip(found.cell.tolist(), found.length, strict=True):
@@ -126,8 +127,8 @@ def test_intervals_share_the_length_of_what_they_cover(
     marks = depths[0] + np.unique(cuts) * (depths[-1] - depths[0])
     if len(marks) < 2:
         return
-    parts = crossings(path, grid, np.column_stack((marks[:-1], marks[1:])))
-    one = crossings(path, grid, np.array([[marks[0], marks[-1]]]))
+    parts = crossings(path, grid, np.column_stack((marks[:-1], marks[1:]))).in_si()
+    one = crossings(path, grid, np.array([[marks[0], marks[-1]]])).in_si()
     slack = 1e-9 * path.length.m_as("m")
     split, joined = by_cell(parts), by_cell(one)
     for cell in split.keys() | joined.keys():

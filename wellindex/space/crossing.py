@@ -15,7 +15,7 @@ from wellindex.space.hexahedral_crossing import hexahedral_pieces
 from wellindex.space.intervals import open_intervals
 from wellindex.space.path import Path
 from wellindex.space.pieces import SLIVER, Pieces
-from wellindex.space.tensor_crossing import tensor_pieces
+from wellindex.space.tensor_crossing import onto_all_faces, tensor_pieces
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
@@ -177,6 +177,7 @@ class _Followed:
 
     visits: list[_Visit] = field(default_factory=list)
     overlaps: list[tuple[float, float, tuple[int, ...]]] = field(default_factory=list)
+    latest: dict[tuple[int, ...], int] = field(default_factory=dict)
 
     def add(self, visit: _Visit) -> None:
         """Add a stretch, or lengthen the last one by it."""
@@ -184,6 +185,15 @@ class _Followed:
             self.visits[-1].extend(visit)
         else:
             self.visits.append(visit)
+
+    def claim(self, md_in: float, md_out: float, cell: tuple[int, ...]) -> None:
+        """Add another cell's claim to a stretch, or lengthen its last one by it."""
+        last = self.latest.get(cell)
+        if last is not None and md_in - self.overlaps[last][1] <= _same(md_in):
+            self.overlaps[last] = (self.overlaps[last][0], md_out, cell)
+        else:
+            self.latest[cell] = len(self.overlaps)
+            self.overlaps.append((md_in, md_out, cell))
 
     def gaps(self) -> list[tuple[float, float]]:
         """Return the stretches of an interval between visits that lie in no cell."""
@@ -209,13 +219,16 @@ def crossings(path: Path, grid: Grid, intervals: Array) -> Crossings:
             continue
         stations = np.concatenate(([top], depths[(depths > top) & (depths < bottom)], [bottom]))
         places = path.at(stations)
+        if isinstance(grid, TensorGrid):
+            places = onto_all_faces(places, grid)
         legs = zip(pairwise(stations.tolist()), pairwise(places), strict=True)
         for (md_a, md_b), (start, stop) in legs:
             pieces = _pieces_of(grid, start, stop)
             size = md_b - md_a
             for visit in _visits(pieces, grid, number, md_a, size, start, stop):
                 found.add(visit)
-            found.overlaps += [(md_a + i * size, md_a + o * size, c) for i, o, c in pieces.also]
+            for into, out, cell in pieces.also:
+                found.claim(md_a + into * size, md_a + out * size, cell)
     return Crossings(_rows(found.visits), found.gaps(), found.overlaps)
 
 

@@ -18,7 +18,7 @@ Array = np.ndarray[Any, Any]
 
 #: A cell whose volume is below this part of its box's is no cell: it has pinched out.
 _NO_VOLUME = 1e-12
-#: A corner folded back by less than this part of the cell's volume is rounding.
+#: A fold by less than this part of the largest Jacobian is rounding.
 _FOLDED = 1e-6
 #: Cells whose volume and corners are examined at once.
 _CHUNK = 4096
@@ -118,7 +118,10 @@ class HexahedralGrid:
 
     def _examined(self, present: Any) -> Array:
         """Return which cells exist and have a volume; refuse folded and inverted ones."""
-        exists = np.ones(self.shape, dtype=bool) if present is None else np.asarray(present)
+        try:
+            exists = np.ones(self.shape, dtype=bool) if present is None else np.asarray(present)
+        except ValueError:
+            raise ShapeError("HexahedralGrid(): present is no array: its rows differ") from None
         if exists.shape != self.shape or exists.dtype != np.bool_:
             raise ShapeError(
                 f"HexahedralGrid(): present is an array of bool of shape {self.shape}; "
@@ -126,19 +129,23 @@ class HexahedralGrid:
             )
         exists = exists.ravel().copy()
         gauss = np.stack(np.meshgrid(_GAUSS, _GAUSS, _GAUSS, indexing="ij"), axis=-1).reshape(8, 3)
+        points = np.concatenate((gauss, CORNERS))
         folded = np.zeros(len(exists), dtype=bool)
         for start in range(0, len(exists), _CHUNK):
             part = slice(start, start + _CHUNK)
             # Seen from a corner: coordinates far from zero would cost digits.
             cells = self._corners[part] - self._corners[part, :1]
+            jacobians = _jacobians(cells, points)
             # The Jacobian is quadratic along each axis, so two Gauss points give it exactly.
-            volume = _jacobians(cells, gauss).mean(axis=0)
-            box = np.ptp(cells, axis=1).prod(axis=1)
-            exists[part] &= np.abs(volume) > _NO_VOLUME * box
-            worst = (_jacobians(cells, CORNERS.astype(float)) * np.sign(volume)).min(axis=0)
-            folded[part] = worst < -_FOLDED * np.abs(volume)
+            volume = jacobians[: len(gauss)].mean(axis=0)
+            rounding = _NO_VOLUME * np.ptp(cells, axis=1).prod(axis=1)
+            # A cell turned inside out in one part may have no volume in all: it is no pinch-out.
+            low, high = jacobians.min(axis=0), jacobians.max(axis=0)
+            least = np.maximum(_FOLDED * np.maximum(-low, high), rounding)
+            folded[part] = exists[part] & (low < -least) & (high > least)
+            exists[part] &= np.abs(volume) > rounding
             self._volume[part] = volume
-        self._refuse(folded & exists, "its corners are out of order or its faces cross")
+        self._refuse(folded, "its corners are out of order or its faces cross")
         sign = np.sign(self._volume)
         majority = 1.0 if np.sum(sign[exists]) >= 0.0 else -1.0
         self._refuse(

@@ -70,14 +70,14 @@ def _meets(start: Array, along: Array, faces: Array) -> Array:
     a, b, c = -turn(e2, e3), turn(w, e3) - turn(e2, e1), turn(w, e1)
     root = np.sqrt(np.maximum(b * b - 4.0 * a * c, 0.0))
     q = -0.5 * (b + np.where(b < 0.0, -root, root))
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         v = np.concatenate((q / a, c / q))
     e1, e2, e3, w, p00 = (np.concatenate((x, x)) for x in (e1, e2, e3, w, p00))
     usable = np.isfinite(v) & (v >= -_BEYOND) & (v <= 1.0 + _BEYOND)
     e1, e2, e3, w, p00, v = (x[usable] for x in (e1, e2, e3, w, p00, v))
     across = np.eye(3) - np.outer(along, along) / size**2
     below, above = (e1 + v[:, None] * e3) @ across, (w - v[:, None] * e2) @ across
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         u = np.sum(above * below, axis=1) / np.sum(below * below, axis=1)
     on = np.isfinite(u) & (u >= -_BEYOND) & (u <= 1.0 + _BEYOND)
     u, v = u[on, None], v[on, None]

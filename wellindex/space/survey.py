@@ -130,6 +130,8 @@ class Survey:
             raise DomainError("Survey(): a survey has at least two stations")
         if np.shape(head) != (3,):
             raise ShapeError("Survey(): head is one point (x, y, z)")
+        if np.ndim(azimuth_offset) or np.ndim(chord_tolerance):
+            raise ShapeError("Survey(): azimuth_offset is one angle, chord_tolerance one length")
         steps = np.diff(measured_depth)
         wrong = np.flatnonzero(steps <= 0.0)
         if wrong.size:
