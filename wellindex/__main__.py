@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import TextIO
 
 from wellindex import __version__
-from wellindex.case import files, report
+from wellindex.case import figure, files, report
 from wellindex.case.run import run_case
 from wellindex.errors import CaseError
 from wellindex.units.systems import SYSTEMS
@@ -31,7 +31,7 @@ def _parser() -> argparse.ArgumentParser:
         "run",
         help="compute a case, print the results and write them to files",
         description="Compute a case: print its couplings and results, and write "
-        f"{report.CSV_NAME} and {report.JSON_NAME}.",
+        f"{report.CSV_NAME} and {report.JSON_NAME}; with --figure also drawings.",
         allow_abbrev=False,
     )
     run.add_argument("case", metavar="CASE.toml", type=Path, help="the case file")
@@ -45,6 +45,12 @@ def _parser() -> argparse.ArgumentParser:
         "--units",
         choices=SYSTEMS,
         help="unit system of the results; default: the case's, or metric where it names none",
+    )
+    run.add_argument(
+        "--figure",
+        action="store_true",
+        help="also draw each well's path through the grid, in section and in plan, as SVG and PNG "
+        "(needs matplotlib: the extra 'report')",
     )
     run.add_argument("--force", action="store_true", help="replace result files that exist")
     check = commands.add_parser(
@@ -62,10 +68,14 @@ def _run(given: argparse.Namespace) -> str:
     folder = given.out or Path(_DEFAULT_FOLDER, given.case.stem.strip(".") or "case")
     file = files.read_file(given.case)
     files.check_folder(folder, report.NAMES, force=given.force)
+    if given.figure:
+        figure.require()
     outcome = run_case(file, given.units)
     text = report.as_text(outcome)
-    texts = report.as_files(outcome, __version__)
-    written = files.write_together(folder, texts, force=given.force)
+    contents: dict[str, str | bytes] = {**report.as_files(outcome, __version__)}
+    if given.figure:
+        contents |= figure.as_files(outcome)
+    written = files.write_together(folder, contents, force=given.force)
     return text + "\n" + "\n".join(f"written: {path}" for path in written)
 
 

@@ -1,4 +1,4 @@
-"""The bundled case, edited copies of it, and the command run in this process."""
+"""The bundled case, a straight one and edited copies of it, the command run in this process."""
 
 import io
 import tomllib
@@ -10,7 +10,8 @@ import wellindex
 from wellindex.__main__ import main
 
 BUNDLED: Final = Path(wellindex.__file__).parent / "case" / "five_layers.toml"
-TEXT: Final = BUNDLED.read_text(encoding="utf-8")
+STRAIGHT: Final = Path(__file__).with_name("straight.toml")
+TEXT: Final = STRAIGHT.read_text(encoding="utf-8")
 
 
 class Answer(NamedTuple):
@@ -30,7 +31,7 @@ def command(*arguments: Any) -> Answer:
 
 
 def edited(*changes: tuple[str, str], extra: str = "") -> str:
-    """The bundled case with some of its words replaced, and lines added at its end."""
+    """The straight case with some of its words replaced, and lines added at its end."""
     text = TEXT
     for old, new in changes:
         assert old in text, old

@@ -42,7 +42,7 @@ EDITS = {
     ),
     "grid is a text": (
         edited(("[units]", 'grid = "fine"\n[units]'), ("[grid]", "[other]")),
-        "grid: needs a table with the keys dx, dy, dz, origin; got 'fine'",
+        "grid: needs a table with the keys dx, dy, dz, origin, corners; got 'fine'",
     ),
     "units is a text": (
         edited(("[units]", 'units = "oilfield"\n[other]')),
@@ -50,7 +50,7 @@ EDITS = {
     ),
     "a well is a number": (
         edited(("[units]", "wells = [1]\n[units]")).partition("[[wells]]")[0],
-        "wells[0]: needs a table with the keys name, role, path",
+        "wells[0]: needs a table with the keys name, role, wellbore_radius",
     ),
     "long list": (
         edited((DZ, "dz = [\n" + "1,\n" * 10_001 + "]")),
@@ -218,9 +218,18 @@ EDITS = {
         edited(('"8320 ft"', '"8190 ft"')),
         "wells[0].path: points 0 and 1 are the same",
     ),
-    "oblique path": (
-        edited(('["1575 ft", "1575 ft", "8320 ft"]', '["1575 ft", "1975 ft", "8320 ft"]')),
-        "wells[0].path: the path is not along one axis",
+    "placement of an oblique path": (
+        edited(
+            ('["1575 ft", "1575 ft", "8320 ft"]', '["1575 ft", "1975 ft", "8320 ft"]'),
+            ("skin = 2\n", 'skin = 2\nplacement = "west"\n'),
+            ('"8315 ft"', '"8310 ft"'),
+        ),
+        "wells[0]: placement 'west' is for a well along one axis of the grid; this one is oblique",
+    ),
+    "unknown method": (
+        edited(("skin = 2\n", 'skin = 2\nmethod = "projected"\n')),
+        "wells[0].method: needs one of 'projection', 'axis'",
+        "did you mean 'projection'?",
     ),
     "interval outside the grid": (
         edited(('"8240 ft"', '"8216 ft"'), ('"8285 ft"', '"8220 ft"')),
@@ -236,7 +245,7 @@ EDITS = {
     ),
     "interval upside down": (
         edited(('"8315 ft"', '"8300 ft"')),
-        "wells[0].open[1]: open[1] does not run downwards",
+        "wells[0].open[1]: open[1] does not run forwards along the path",
     ),
     "intervals overlap": (
         edited(('"8303 ft"', '"8280 ft"')),
@@ -381,7 +390,7 @@ def test_too_many_blocks_on_the_paths(tmp_path: Path) -> None:
     text = text.replace(PRESSURES, '"3600 psia"')
     answer = command("check", written(tmp_path, text))
     assert answer.code == 2
-    assert "faces of blocks; at most 50000" in answer.err
+    assert "the paths pass more than 50000 points and faces of blocks" in answer.err
 
 
 @pytest.mark.parametrize(

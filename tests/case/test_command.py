@@ -7,6 +7,7 @@ from contextlib import redirect_stderr, redirect_stdout
 from pathlib import Path
 from typing import Any
 
+import numpy as np
 import pytest
 
 from tests.case.cases import BUNDLED, command, edited, written
@@ -28,7 +29,7 @@ def test_the_bundled_case_runs(tmp_path: Path) -> None:
     assert done.returncode == 0
     assert done.stderr == b""
     out = done.stdout.decode("ascii")
-    assert out.startswith("Oil producer through five uneven layers\n")
+    assert out.startswith("Deviated oil producer through five uneven layers\n")
     assert "[cP*rb/day/psi]" in out
     assert "no permeability across the well: index 0" in out
     assert "surface rate" in out
@@ -134,7 +135,43 @@ def test_no_plotting_and_nothing_of_scipy_beyond_what_pint_loads(tmp_path: Path)
     assert done.returncode == 0, done.stderr
 
 
-def test_the_case_with_every_key_has_every_key(monkeypatch: pytest.MonkeyPatch) -> None:
+#: What stands in every_key.toml as comments, in place of other keys.
+IN_PLACE = (
+    ("dx = ", "[rock]", 'corners = { file = "grid.npz", unit = "m" }\n\n'),
+    ("kx = ", "net_to_gross", 'permeability = { file = "rock.npz", unit = "D" }\n'),
+    (
+        "measured_depth = [",
+        "# In place",
+        'stations = [["82 m", "20 degree", "15 degree"], ["102 m", "28 degree", "18 degree"]]\n',
+    ),
+)
+
+
+def _in_other_words(folder: Path) -> list[Path]:
+    """The case with every key, with the keys in place of others; and the files it names."""
+    text = BUNDLED.with_name("every_key.toml").read_text(encoding="utf-8")
+    for start, stop, instead in IN_PLACE:
+        before, _start, rest = text.partition(f"\n{start}")
+        text = f"{before}\n{instead}{stop}{rest.partition(stop)[2]}"
+    corners = np.zeros((16, 15, 3, 8, 3))
+    for n in range(8):
+        step = np.array([n & 1, n >> 1 & 1, n >> 2 & 1])
+        corners[..., n, :] = (np.moveaxis(np.indices((16, 15, 3)), 0, -1) + step) * [18.0, 20, 6]
+    np.savez(folder / "grid.npz", corners=corners + np.array([0.0, 0.0, 85.0]))
+    np.savez(folder / "rock.npz", kx=np.ones((16, 15, 3)), kz=np.ones((16, 15, 3)))
+    (folder / "survey.csv").write_text(
+        "measured_depth [m],inclination [degree],azimuth [degree]\n82,20,15\n102,28,18\n"
+    )
+    (stations,) = (line for line in text.splitlines() if line.startswith("stations = "))
+    return [
+        written(folder, text),
+        written(folder, text.replace(stations, 'file = "survey.csv"'), "other.toml"),
+    ]
+
+
+def test_the_case_with_every_key_has_every_key(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
     asked: dict[tuple[str, ...], set[str]] = {}
     make = Table.__init__
 
@@ -147,10 +184,13 @@ def test_the_case_with_every_key_has_every_key(monkeypatch: pytest.MonkeyPatch) 
     answer = command("check", case)
     assert answer == (
         0,
-        f"{case} is valid: 2 wells, 5 couplings, grid of 16 x 15 x 3 blocks\n",
+        f"{case} is valid: 3 wells, 8 couplings, grid of 16 x 15 x 3 blocks\n",
         "",
     )
-    assert len(asked) == 10
+    for other in _in_other_words(tmp_path):
+        answer = command("check", other)
+        assert answer.code == 0, answer.err
+    assert len(asked) == 12
     for known, given in asked.items():
         assert given == set(known)
 

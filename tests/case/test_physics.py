@@ -13,7 +13,7 @@ from typing import Any, NamedTuple
 import pytest
 from mpmath import mpf  # type: ignore[import-untyped]
 
-from tests.case.cases import BUNDLED, command, document, edited, written
+from tests.case.cases import STRAIGHT, command, document, edited, written
 from tests.oracles import closed_form
 from tests.published import tables
 from wellindex import ureg
@@ -47,7 +47,7 @@ def _column(well: dict[str, Any], name: str) -> list[float]:
 
 
 class Row(NamedTuple):
-    """One coupling of the bundled case by hand."""
+    """One coupling of the straight case by hand."""
 
     layer: int
     wi: mpf
@@ -108,7 +108,7 @@ def _flow(case: dict[str, Any], pwf: float | mpf) -> Flow:
     return Flow(rates, sum(rates), slope)
 
 
-def test_the_indices_of_the_bundled_case(tmp_path: Path) -> None:
+def test_the_indices_of_the_straight_case(tmp_path: Path) -> None:
     (well,) = _results(tmp_path, edited())["wells"]
     rows = _rows(document())
     assert [row.layer for row in rows] == well["couplings"]["k"]["values"] == [0, 1, 2, 4]
@@ -121,7 +121,7 @@ def test_the_indices_of_the_bundled_case(tmp_path: Path) -> None:
     assert rows[1].wi == 0.0
 
 
-def test_the_rates_of_the_bundled_case(tmp_path: Path) -> None:
+def test_the_rates_of_the_straight_case(tmp_path: Path) -> None:
     (well,) = _results(tmp_path, edited())["wells"]
     case = document()
     flow = _flow(case, _si(case["wells"][0]["at_pressure"]))
@@ -142,7 +142,7 @@ def test_the_rates_of_the_bundled_case(tmp_path: Path) -> None:
 
 
 @pytest.mark.parametrize("rate", ["900 stb/day", "1125 rb/day"])
-def test_the_pressure_of_the_bundled_case_at_a_rate(rate: str, tmp_path: Path) -> None:
+def test_the_pressure_of_the_straight_case_at_a_rate(rate: str, tmp_path: Path) -> None:
     text = edited(('at_pressure = "3050 psia"', f'at_rate = "{rate}"'))
     (well,) = _results(tmp_path, text)["wells"]
     case = document()
@@ -399,6 +399,7 @@ def test_the_json_restates_the_case(tmp_path: Path) -> None:
     results = _results(tmp_path, edited())
     assert results["given"] == document()
     assert results["wellindex"]
+    assert results["files"] == []
     assert results["case"]["file"] == "case.toml"
-    assert results["case"]["sha256"] == hashlib.sha256(BUNDLED.read_bytes()).hexdigest()
+    assert results["case"]["sha256"] == hashlib.sha256(STRAIGHT.read_bytes()).hexdigest()
     assert results["caution"].startswith("Screening calculations: not for well control")

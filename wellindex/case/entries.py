@@ -155,6 +155,26 @@ class Table:
         """Return the value of a key that is there."""
         return Entry(self._values[key], self._place(key), self.problems)
 
+    def form(self, *forms: tuple[tuple[str, ...], tuple[str, ...]]) -> int | None:
+        """Return which of several forms the table has: required and optional keys of each.
+
+        None, with a note, where it has none, a mixture, or one without all its required keys.
+        """
+        names = " or ".join(", ".join(required) for required, _optional in forms)
+        begun = [
+            number
+            for number, (required, optional) in enumerate(forms)
+            if any(key in self for key in (*required, *optional))
+        ]
+        if len(begun) != 1:
+            got = "keys of both" if begun else "neither"
+            self.problems.add(self.where, f"give either {names}; got {got}")
+            return None
+        missing = [key for key in forms[begun[0]][0] if key not in self]
+        for key in missing:
+            self.problems.add(self._place(key), f"missing; the table {self.where} needs it")
+        return None if missing else begun[0]
+
     def read(self, key: str, reader: Reader, default: Any = UNUSABLE) -> Any:
         """Return what `reader` makes of a key's value; `default` where the key is not there."""
         return reader(self.entry(key)) if key in self else default

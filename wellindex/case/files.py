@@ -25,6 +25,7 @@ class CaseFile(NamedTuple):
     name: str
     document: dict[str, Any]
     sha256: str
+    folder: Path
 
 
 def read_file(path: Path) -> CaseFile:
@@ -68,7 +69,8 @@ def read_file(path: Path) -> CaseFile:
             raise CaseError(
                 f"line {number} is longer than {LONGEST_LINE} bytes: break the list over lines"
             )
-    return CaseFile(path.name, _parsed(content), hashlib.sha256(content).hexdigest())
+    digest = hashlib.sha256(content).hexdigest()
+    return CaseFile(path.name, _parsed(content), digest, path.parent)
 
 
 def _parsed(content: bytes) -> dict[str, Any]:
@@ -126,14 +128,14 @@ def _check_folder(folder: Path, names: Sequence[str], *, force: bool) -> None:
             )
 
 
-def write_together(folder: Path, texts: Mapping[str, str], *, force: bool) -> list[Path]:
+def write_together(folder: Path, contents: Mapping[str, str | bytes], *, force: bool) -> list[Path]:
     """Write several files so that either all are there afterwards, or all is as it was before.
 
     Parameters
     ----------
     folder : Path
         Made if it does not exist.
-    texts : mapping of str to str
+    contents : mapping of str to str or bytes
         File names and what they shall hold.
     force : bool
         Whether files that exist may be replaced.
@@ -148,12 +150,12 @@ def write_together(folder: Path, texts: Mapping[str, str], *, force: bool) -> li
     CaseError
         What `check_folder` refuses; a disk that is full.
     """
-    check_folder(folder, list(texts), force=force)
+    check_folder(folder, list(contents), force=force)
     made = [each for each in (folder, *folder.parents) if not os.path.lexists(each)]
     change = _Change()
     try:
         folder.mkdir(parents=True, exist_ok=True)
-        fresh = {folder / name: change.new_file(folder, text) for name, text in texts.items()}
+        fresh = {folder / name: change.new_file(folder, each) for name, each in contents.items()}
         for target, temporary in fresh.items():
             change.put(temporary, target)
     except BaseException as error:
@@ -176,12 +178,12 @@ class _Change:
         self._moved: list[tuple[Path, Path]] = []
         self._placed: list[Path] = []
 
-    def new_file(self, folder: Path, text: str) -> Path:
+    def new_file(self, folder: Path, content: str | bytes) -> Path:
         """Write a temporary file beside its target."""
         handle, name = tempfile.mkstemp(prefix=".wellindex-", suffix=".part", dir=folder)
         self._temporary.append(Path(name))
-        with open(handle, "w", encoding="utf-8", newline="") as file:
-            file.write(text)
+        with open(handle, "wb") as file:
+            file.write(content.encode("utf-8") if isinstance(content, str) else content)
             file.flush()
             os.fsync(file.fileno())
         Path(name).chmod(0o666 & ~_umask())

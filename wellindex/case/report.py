@@ -57,15 +57,23 @@ def caution_lines(well: SolvedWell) -> Iterator[str]:
 
 
 def _couplings_table(well: SolvedWell) -> str:
-    return aligned(
-        [
-            column
-            for column in well.couplings.columns()
-            if column.name not in _NOT_PRINTED
-            and not (column.name in _PRINTED_IF_NOT_ONE and set(column.values) == {1.0})
-            and not (column.name == "note" and not any(column.values))
-        ]
+    """Return the table of couplings; each note stands once, below it."""
+    *columns, note = well.couplings.columns()
+    shown = [
+        column
+        for column in columns
+        if column.name not in _NOT_PRINTED
+        and not (column.name in _PRINTED_IF_NOT_ONE and set(column.values) == {1.0})
+    ]
+    notes = list(dict.fromkeys(words for words in note.values if words))
+    if not notes:
+        return aligned(shown)
+    marks = [str(notes.index(words) + 1) if words else "" for words in note.values]
+    lines = (
+        textwrap.fill(f"note {number}: {words}", _WIDTH, subsequent_indent="  ")
+        for number, words in enumerate(notes, start=1)
     )
+    return "\n".join([aligned([*shown, Column("note", "", marks)]), "", *lines])
 
 
 def as_files(outcome: Outcome, version: str) -> dict[str, str]:
@@ -93,6 +101,7 @@ def as_files(outcome: Outcome, version: str) -> dict[str, str]:
         document = {
             "wellindex": version,
             "case": {"file": outcome.file.name, "sha256": outcome.file.sha256},
+            "files": [{"file": name, "sha256": digest} for name, digest in outcome.beside.items()],
             "unit_system": outcome.case.system,
             "given": outcome.file.document,
             "wells": [
@@ -126,6 +135,7 @@ def _as_plain_well(well: SolvedWell, columns: list[Column]) -> dict[str, Any]:
     return {
         "name": well.case.name,
         "role": well.case.role,
+        "method": well.couplings.method,
         "bottom_hole_pressure": _single(kinds.PRESSURE, state.pwf),
         "reference_depth": _single(kinds.COORDINATE, state.reference_depth),
         "surface_rate": _single(kinds.SURFACE_RATE, state.rate),

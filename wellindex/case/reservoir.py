@@ -6,10 +6,13 @@ from typing import Any, NamedTuple
 
 import numpy as np
 
+from wellindex.case.beside import Beside
+from wellindex.case.cells import MOST_BLOCKS, read_cells, read_hexahedra
 from wellindex.case.entries import (
     UNUSABLE,
     Entry,
     Reader,
+    Table,
     all_or_nothing,
     number,
     quantity,
@@ -25,9 +28,11 @@ from wellindex.units.answers import as_quantity
 Array = np.ndarray[Any, Any]
 
 MOST_SIZES = 10_000
-MOST_BLOCKS = 2_000_000
 #: Edges of blocks further than this part of a size from where they belong are lost in rounding.
 _LOST = 1e-6
+
+_BLOCKS = (("dx", "dy", "dz"), ("origin",))
+_ROCK = (("kx", "kz"), ("ky",))
 
 position = quantity(kinds.COORDINATE, "8200 ft")
 fraction = number(kinds.Fraction.__metadata__[0], "0.85")
@@ -54,11 +59,19 @@ class Spread(NamedTuple):
         return self.values
 
 
-def read_grid(entry: Entry) -> Any:
-    """Read the blocks; give a `TensorGrid`."""
-    table = entry.table(("dx", "dy", "dz"), ("origin",))
+def read_grid(entry: Entry, beside: Beside) -> Any:
+    """Read the cells; give a `TensorGrid` or a `HexahedralGrid`."""
+    table = entry.table((), (*_BLOCKS[0], *_BLOCKS[1], "corners"))
     if table is None:
         return UNUSABLE
+    form = table.form(_BLOCKS, (("corners",), ()))
+    if form == 1:
+        return table.read("corners", lambda each: read_hexahedra(each, beside))
+    return UNUSABLE if form is None else _read_blocks(entry, table)
+
+
+def _read_blocks(entry: Entry, table: Table) -> Any:
+    """Read rows of sizes; give a `TensorGrid`."""
     sizes = [table.read(key, _sizes) for key in ("dx", "dy", "dz")]
     if not any(size is UNUSABLE for size in sizes):
         blocks = int(np.prod([len(size) for size in sizes]))
@@ -126,21 +139,25 @@ def read_point(entry: Entry) -> Any:
     return as_quantity(kinds.COORDINATE, np.array([value.magnitude for value in values]), "si")
 
 
-def read_rock(entry: Entry, grid: Any) -> tuple[Any, Any]:
+def read_rock(entry: Entry, grid: Any, beside: Beside) -> tuple[Any, Any]:
     """Read the rock; give a `Permeability` and net-to-gross."""
-    table = entry.table(("kx", "kz"), ("ky", "net_to_gross"))
+    table = entry.table((), (*_ROCK[0], *_ROCK[1], "permeability", "net_to_gross"))
     if table is None:
         return UNUSABLE, UNUSABLE
+    form = table.form(_ROCK, (("permeability",), ()))
 
     def blocks(key: str, reader: Reader, default: Any) -> Any:
         return table.read(
             key, lambda each: _in_blocks(read_spread(each, reader, grid), grid), default
         )
 
+    net_to_gross = blocks("net_to_gross", fraction, 1.0)
+    if form == 1:
+        return table.read("permeability", lambda e: read_cells(e, grid, beside)), net_to_gross
     kx = blocks("kx", _permeability, UNUSABLE)
     ky = blocks("ky", _permeability, kx)
     kz = blocks("kz", _permeability, UNUSABLE)
-    return table.build(Permeability, kx, ky, kz), blocks("net_to_gross", fraction, 1.0)
+    return table.build(Permeability, kx, ky, kz), net_to_gross
 
 
 def _in_blocks(spread: Any, grid: Any) -> Any:

@@ -10,6 +10,7 @@ from typing import NamedTuple
 
 import numpy as np
 
+from wellindex.case.beside import Beside
 from wellindex.case.entries import TOO_FAR_APART, Problems, plain_words
 from wellindex.case.files import CaseFile
 from wellindex.case.schema import Case, read_case
@@ -34,9 +35,10 @@ class SolvedWell(NamedTuple):
 
 
 class Outcome(NamedTuple):
-    """A case and its solved wells."""
+    """A case, the hashes of the files beside it, and its solved wells."""
 
     file: CaseFile
+    beside: dict[str, str]
     case: Case
     wells: list[SolvedWell]
 
@@ -84,12 +86,13 @@ def run_case(file: CaseFile, system: SystemName | None = None) -> Outcome:
     ['Demo 1']
     """
     with np.errstate(over="raise", divide="raise", invalid="raise"):
-        case = read_case(file.document, system)
+        beside = Beside(file.folder)
+        case = read_case(file.document, system, beside)
         problems = Problems()
         with unit_system(case.system, site_pressure=case.site_pressure):
             wells = [_solve(case, well, problems) for well in case.wells]
     problems.raise_any()
-    return Outcome(file, case, [well for well in wells if well is not None])
+    return Outcome(file, beside.sha256, case, [well for well in wells if well is not None])
 
 
 class _UnfitError(Exception):
@@ -137,6 +140,7 @@ def _couple(case: Case, well: WellCase) -> Couplings:
             rw=well.rw,
             skin=well.skin,
             intervals=well.intervals,
+            method=well.method,
             net_to_gross=case.net_to_gross,
             placement=well.placement,
         )

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any, NamedTuple
 
+from wellindex.case.beside import Beside
 from wellindex.case.entries import (
     UNUSABLE,
     Entry,
@@ -19,6 +20,7 @@ from wellindex.case.wells import WellCase, read_wells
 from wellindex.errors import WellIndexError
 from wellindex.rock import Permeability
 from wellindex.space.grid import TensorGrid
+from wellindex.space.hexahedral import HexahedralGrid
 from wellindex.units import kinds
 from wellindex.units.systems import SYSTEMS, SystemName, unit_system
 
@@ -29,13 +31,15 @@ class Case(NamedTuple):
     title: str
     system: SystemName
     site_pressure: str | None
-    grid: TensorGrid
+    grid: TensorGrid | HexahedralGrid
     permeability: Permeability
     net_to_gross: Any
     wells: list[WellCase]
 
 
-def read_case(document: Mapping[str, Any], system: SystemName | None = None) -> Case:
+def read_case(
+    document: Mapping[str, Any], system: SystemName | None = None, beside: Beside | None = None
+) -> Case:
     """Turn the parsed text of a case file into grid, rock and wells.
 
     Parameters
@@ -44,6 +48,8 @@ def read_case(document: Mapping[str, Any], system: SystemName | None = None) -> 
         What `tomllib` made of the file.
     system : {"metric", "oilfield", "si", "darcy"}, optional
         Unit system of the answers; default the case's own, and metric where it names none.
+    beside : Beside, optional
+        Opens the files that the case names; without it, a case that names one is refused.
 
     Returns
     -------
@@ -65,6 +71,7 @@ def read_case(document: Mapping[str, Any], system: SystemName | None = None) -> 
       wells: missing; the file needs it
     """
     problems = Problems()
+    beside = beside or Beside()
     top = Entry(document, "", problems).table(
         ("title", "grid", "rock", "wells"), ("units", "fluid")
     )
@@ -72,12 +79,12 @@ def read_case(document: Mapping[str, Any], system: SystemName | None = None) -> 
     title = top.read("title", line(200))
     chosen, site_pressure = top.read("units", _units, ("metric", None))
     with unit_system("metric", site_pressure=site_pressure):
-        grid = top.read("grid", read_grid)
+        grid = top.read("grid", lambda entry: read_grid(entry, beside))
         permeability, net_to_gross = top.read(
-            "rock", lambda entry: read_rock(entry, grid), (UNUSABLE, UNUSABLE)
+            "rock", lambda entry: read_rock(entry, grid, beside), (UNUSABLE, UNUSABLE)
         )
         fluid = top.read("fluid", read_fluid, None)
-        wells = top.read("wells", lambda entry: read_wells(entry, grid, fluid))
+        wells = top.read("wells", lambda entry: read_wells(entry, grid, fluid, beside))
     problems.raise_any()
     return Case(title, system or chosen, site_pressure, grid, permeability, net_to_gross, wells)
 

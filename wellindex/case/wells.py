@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
-from typing import Any, NamedTuple, get_args
+from itertools import pairwise
+from typing import Any, Literal, NamedTuple, get_args
 
 import numpy as np
 
+from wellindex.case.beside import Beside
 from wellindex.case.entries import (
     UNUSABLE,
     Entry,
@@ -25,16 +27,17 @@ from wellindex.case.reservoir import (
     read_point,
     read_spread,
 )
+from wellindex.case.surveys import MOST_STATIONS, read_survey
 from wellindex.fluid import Liquid
 from wellindex.index import Placement
 from wellindex.space.grid import TensorGrid
+from wellindex.space.hexahedral import HexahedralGrid
 from wellindex.space.path import Path
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.well import Role
 
 MOST_WELLS = 1_000
-MOST_POINTS = 10_000
 MOST_INTERVALS = 1_000
 #: Faces of blocks that all paths together may pass: each costs memory and time.
 MOST_CROSSINGS = 50_000
@@ -44,8 +47,11 @@ _pressure = quantity(kinds.PRESSURE, "3900 psia")
 _rate = quantity(kinds.Rate.__metadata__[0], "850 stb/day")
 _skin = number(kinds.Skin.__metadata__[0], "2.5")
 
-_WELL_REQUIRED = ("name", "role", "path", "wellbore_radius", "block_pressure")
+_WELL_REQUIRED = ("name", "role", "wellbore_radius", "block_pressure")
 _WELL_OPTIONAL = (
+    "path",
+    "survey",
+    "method",
     "at_rate",
     "at_pressure",
     "open",
@@ -76,6 +82,7 @@ class WellCase(NamedTuple):
     rw: Any
     skin: Any
     intervals: Any
+    method: Literal["projection", "axis"]
     placement: Placement
     reference_depth: Any
     relative_permeability: Spread
@@ -84,39 +91,49 @@ class WellCase(NamedTuple):
     at_pressure: Any
 
 
-def read_wells(entry: Entry, grid: Any, fluid: Any) -> Any:
+def read_wells(entry: Entry, grid: Any, fluid: Any, beside: Beside) -> Any:
     """Read all wells; give a list of `WellCase`."""
     items = entry.items("a list of tables: write [[wells]] above each well", MOST_WELLS)
     if items is None:
         return UNUSABLE
-    wells = all_or_nothing([_well(item, grid, fluid) for item in items])
+    wells = all_or_nothing([_well(item, grid, fluid, beside) for item in items])
     if wells is UNUSABLE or grid is UNUSABLE:
         return UNUSABLE
     names = [well.name for well in wells]
     for well, name in zip(wells, names, strict=True):
         if names.count(name) > 1:
             entry.problems.add(f"{well.where}.name", f"{name!r} stands twice: one name per well")
-    crossings = sum(_faces_passed(well.path, grid) for well in wells)
-    if crossings > MOST_CROSSINGS:
-        entry.problems.add(
-            entry.where,
-            f"the paths pass {crossings} faces of blocks; at most {MOST_CROSSINGS}: give fewer "
-            "points or fewer wells",
-        )
-        return UNUSABLE
+    crossings = 0
+    for well in wells:
+        crossings += _faces_passed(well.path, grid, MOST_CROSSINGS - crossings)
+        if crossings > MOST_CROSSINGS:
+            entry.problems.add(
+                entry.where,
+                f"the paths pass more than {MOST_CROSSINGS} points and faces of blocks: give "
+                "fewer points or fewer wells",
+            )
+            return UNUSABLE
     return wells
 
 
-def _faces_passed(path: Path, grid: TensorGrid) -> int:
+def _faces_passed(path: Path, grid: TensorGrid | HexahedralGrid, most: int) -> int:
+    """Count the faces that a path passes, or the cells near it; counting stops beyond `most`."""
     points, _depths = path.in_si()
-    passed = [
-        np.abs(np.diff(np.searchsorted(edges, points[:, axis]))).sum()
-        for axis, edges in enumerate(grid.edges())
-    ]
-    return len(points) + int(np.sum(passed))
+    if isinstance(grid, TensorGrid):
+        passed = [
+            np.abs(np.diff(np.searchsorted(edges, points[:, axis]))).sum()
+            for axis, edges in enumerate(grid.edges())
+        ]
+        return len(points) + int(np.sum(passed))
+    count = len(points)
+    for start, stop in pairwise(points):
+        if count > most:
+            break
+        count += len(grid.tree().near(start, stop, 0.0))
+    return count
 
 
-def _well(entry: Entry, grid: Any, fluid: Any) -> Any:
+def _well(entry: Entry, grid: Any, fluid: Any, beside: Beside) -> Any:
     table = entry.table(_WELL_REQUIRED, _WELL_OPTIONAL)
     if table is None:
         return UNUSABLE
@@ -134,10 +151,11 @@ def _well(entry: Entry, grid: Any, fluid: Any) -> Any:
         name=table.read("name", _name),
         role=table.read("role", choice(*get_args(Role))),
         fluid=_fluid_of_well(table, fluid),
-        path=_path(table),
+        path=_path(table, beside),
         rw=radii,
         skin=skins,
         intervals=intervals,
+        method=table.read("method", choice("projection", "axis"), "projection"),
         placement=table.read("placement", choice(*get_args(Placement)), "centre"),
         reference_depth=table.read("reference_depth", position, None),
         relative_permeability=spread("relative_permeability", fraction, everywhere),
@@ -154,7 +172,12 @@ def _fluid_of_well(table: Table, fluid: Any) -> Any:
     return found
 
 
-def _path(table: Table) -> Any:
+def _path(table: Table, beside: Beside) -> Any:
+    form = table.form((("path",), ("measured_depth_at_start",)), (("survey",), ()))
+    if form is None:
+        return UNUSABLE
+    if form == 1:
+        return table.read("survey", lambda entry: read_survey(entry, beside))
     start = table.read(
         "measured_depth_at_start", position, as_quantity(kinds.COORDINATE, 0.0, "si")
     )
@@ -163,7 +186,7 @@ def _path(table: Table) -> Any:
 
 
 def _points(entry: Entry) -> Any:
-    items = entry.items("a list of points (x, y, z) along the well", MOST_POINTS)
+    items = entry.items("a list of points (x, y, z) along the well", MOST_STATIONS)
     points = UNUSABLE if items is None else all_or_nothing([read_point(item) for item in items])
     if points is UNUSABLE:
         return UNUSABLE
