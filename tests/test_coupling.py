@@ -82,7 +82,7 @@ def test_rows_at_50_digits(direction: str, up: bool, placement: str) -> None:
         expected = exact(cell, direction, length, k, rw=0.1, skin=1.5, placement=placement)
         assert wi == close(expected, rel=1e-12)
     assert rows.direction == direction
-    assert rows.method == "axis"
+    assert rows.method == "projection"
 
 
 @pytest.mark.parametrize(
@@ -265,9 +265,12 @@ def test_absent_blocks_hold_no_coupling() -> None:
         ((75.0, 120.0, 0.0), (75.1, 120.0, 21.0)),
     ],
 )
-def test_a_path_off_the_axes_is_refused(points: tuple[tuple[float, float, float], ...]) -> None:
-    with pytest.raises(DomainError, match="not along one axis of the grid"):
-        couple(route(*points), GRID, ROCK, rw="0.1 m")
+def test_a_path_off_the_axes_is_oblique(points: tuple[tuple[float, float, float], ...]) -> None:
+    rows = couple(route(*points), GRID, ROCK, rw="0.1 m")
+    assert rows.direction == "oblique"
+    assert rows.length.m_as("m").sum() == close(sum(map(math.dist, points, points[1:])), rel=1e-9)
+    with pytest.raises(DomainError, match="placement 'corner' is for a well along one axis"):
+        couple(route(*points), GRID, ROCK, rw="0.1 m", placement="corner")
 
 
 def test_only_the_open_part_must_follow_an_axis() -> None:

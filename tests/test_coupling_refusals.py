@@ -30,8 +30,8 @@ VERTICAL = route((75.0, 120.0, 0.0), (75.0, 120.0, 21.0))
     [
         ([("2 m", "6 m"), ("5 m", "8 m")], DomainError, "interval 1 overlaps or precedes interv"),
         ([("9 m", "12 m"), ("2 m", "6 m")], DomainError, "list intervals in order along the path"),
-        ([("6 m", "2 m")], DomainError, "interval 0 does not run downwards"),
-        ([("6 m", "6 m")], DomainError, "interval 0 does not run downwards"),
+        ([("6 m", "2 m")], DomainError, "interval 0 does not run forwards along the path"),
+        ([("6 m", "6 m")], DomainError, "interval 0 does not run forwards along the path"),
         ([("-1 m", "6 m")], DomainError, "leaves the path, which runs from 0 m to 21 m"),
         ([("1 m", "6 m"), ("8 m", "22 m")], DomainError, "interval 1 leaves the path"),
         (("1 m", "6 m"), ShapeError, r"pairs \(from, to\) of measured depth; got \(2,\)"),
@@ -57,10 +57,10 @@ def test_bad_intervals(intervals: Any, error: type[Exception], words: str) -> No
         ({"rw": 0.1}, UnitsError, "rw: needs a length"),
         ({"net_to_gross": 1.2}, DomainError, "net_to_gross: needs a fraction, between 0 and 1"),
         ({"net_to_gross": np.ones((3, 3))}, ShapeError, r"net_to_gross has the shape \(3, 3\)"),
-        ({"method": "guess"}, DomainError, "one of 'axis'"),
+        ({"method": "guess"}, DomainError, "one of 'projection', 'axis'"),
         ({"placement": "left"}, DomainError, "one of 'centre'"),
         ({"path": [(0, 0, 0)]}, UnitsError, "path: needs Path"),
-        ({"grid": None}, UnitsError, "grid: needs TensorGrid"),
+        ({"grid": None}, UnitsError, "grid: needs TensorGrid or HexahedralGrid"),
         ({"permeability": "90 mD"}, UnitsError, "permeability: needs Permeability"),
         (
             {"permeability": rock(np.ones((2, 2, 2)), 1.0, 1.0)},

@@ -181,4 +181,4 @@ def test_a_table_without_units_has_no_line_for_them() -> None:
 
 def test_repr_says_what_it_is() -> None:
     rows: Any = layered_couplings()
-    assert repr(rows) == "Couplings(4 rows along z, method 'axis')"
+    assert repr(rows) == "Couplings(4 rows, z, method 'projection')"

@@ -101,9 +101,7 @@ def projected(check: Checks, crossed: Crossed, length: Array, rw: Array) -> Foun
     effective = np.zeros(len(length))
     for axis in range(3):
         part = crossed.components[:, axis]
-        flow = np.where(
-            crossed.aligned & (crossed.dominant != axis), 0.0, crossed.across(axis) * part
-        )
+        flow = np.where(crossed.aligned, 0.0, crossed.across(axis) * part)
         resistance = flow_resistance(check, crossed.radius(axis), rw, 0.0, flow)
         squares += (flow / resistance) ** 2
         effective += flow**2

@@ -64,6 +64,7 @@ class Tally(Checks):
         self.lost: Any = None
         self.reasons: dict[str, int] = {}
         self.cautions: dict[str, int] = {}
+        self.doubted: dict[str, Any] = {}
 
     def start(self, offset: int, shape: tuple[int, ...], size: int) -> None:
         """Begin the block of `size` elements whose first is number `offset` of `shape`."""
@@ -71,6 +72,7 @@ class Tally(Checks):
         self.shape = shape
         self.size = size
         self.lost = None
+        self.doubted = {}
 
     def refuse(self, bad: Any, reason: str, shown: Any = None) -> None:
         """Raise with the element's index in the whole array, or mark it as lost."""
@@ -88,9 +90,13 @@ class Tally(Checks):
             self.lost = bad if self.lost is None else bad | self.lost
 
     def caution(self, bad: Any, reason: str, shown: Any = None) -> None:
-        """Count doubtful elements; `report` warns once."""
+        """Count doubtful elements, each once for a reason; `report` warns once."""
         if bad is not False and np.any(bad):
-            count = int(np.count_nonzero(np.broadcast_to(bad, self.size)))
+            bad = np.broadcast_to(bad, self.size)
+            known = self.doubted.get(reason)
+            fresh = bad if known is None else bad & ~known
+            self.doubted[reason] = bad if known is None else bad | known
+            count = int(np.count_nonzero(fresh))
             self.cautions[reason] = self.cautions.get(reason, 0) + count
 
     def report(self) -> None:
