@@ -69,6 +69,7 @@ def generate(app: Any) -> None:
     (folder / "known_units.rst").write_text(unit_tables.known(), encoding="utf-8")
     (folder / "refused_units.rst").write_text(unit_tables.refused(), encoding="utf-8")
     (folder / "five_layers.txt").write_text(case_example.printed(), encoding="utf-8")
+    (folder / "five_layers.svg").write_bytes(case_example.drawn())
     (folder / "benchmarks.rst").write_text(benchmark_page.page(folder), encoding="utf-8")
     draw.all_figures(folder / "figures")
 

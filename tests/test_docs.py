@@ -177,6 +177,7 @@ TABLES: dict[str, list[Any]] = {
     "rock": ["rock"],
     "fluid": ["fluid"],
     "wells": ["wells", 0],
+    "survey": ["wells", 0, "survey"],
     "open": ["wells", 0, "open", 0],
 }
 

@@ -11,9 +11,13 @@ if __name__ == "__main__":
 
 from tests.published import tables
 from wellindex import equivalent_radius, ureg, well_index
+from wellindex.case import figure
+from wellindex.case.beside import LARGEST_CSV, LARGEST_NPZ
+from wellindex.case.cells import MOST_BLOCKS
 from wellindex.case.files import LARGEST_FILE
-from wellindex.case.reservoir import MOST_BLOCKS, MOST_SIZES
-from wellindex.case.wells import MOST_CROSSINGS, MOST_INTERVALS, MOST_POINTS, MOST_WELLS
+from wellindex.case.reservoir import MOST_SIZES
+from wellindex.case.surveys import MOST_CHORDS, MOST_STATIONS
+from wellindex.case.wells import MOST_CROSSINGS, MOST_INTERVALS, MOST_WELLS
 from wellindex.index import DOUBTFUL_LOGARITHM, DOUBTFUL_SUM, SMALLEST_LOGARITHM
 from wellindex.radius.closed_form import HALF_EXP_MINUS_GAMMA
 from wellindex.rock import STANDARD_GRAVITY
@@ -82,10 +86,14 @@ def values() -> dict[str, str]:
         "most sizes": f"{MOST_SIZES:,}",
         "most blocks": f"{MOST_BLOCKS:,}",
         "most wells": f"{MOST_WELLS:,}",
-        "most points": f"{MOST_POINTS:,}",
+        "most points": f"{MOST_STATIONS:,}",
         "most intervals": f"{MOST_INTERVALS:,}",
         "most crossings": f"{MOST_CROSSINGS:,}",
+        "most chords": f"{MOST_CHORDS:,}",
+        "most drawn": f"{figure.MOST_WELLS:,}",
         "largest file": f"{LARGEST_FILE:,}",
+        "largest csv": f"{LARGEST_CSV:,}",
+        "largest npz": f"{LARGEST_NPZ:,}",
     }
 
 
