@@ -36,7 +36,9 @@ def grid_of(corners: Array, **others: Any) -> HexahedralGrid:
     return HexahedralGrid(metres(corners), **others)
 
 
-def cut(x: Sequence[float], y: Sequence[float], z: Sequence[float], **others: Any) -> HexahedralGrid:
+def cut(
+    x: Sequence[float], y: Sequence[float], z: Sequence[float], **others: Any
+) -> HexahedralGrid:
     """The hexahedra of a tensor grid with these faces."""
     return grid_of(corners_of(lattice(x, y, z)), **others)
 

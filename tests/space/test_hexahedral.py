@@ -96,7 +96,11 @@ def test_the_sizes_are_distances_between_centres_of_opposite_faces() -> None:
     for n, cell in enumerate(cells):
         own = corners[tuple(cell)]
         # Face centres by the corners' numbers, written out.
-        faces = [([0, 2, 4, 6], [1, 3, 5, 7]), ([0, 1, 4, 5], [2, 3, 6, 7]), ([0, 1, 2, 3], [4, 5, 6, 7])]
+        faces = [
+            ([0, 2, 4, 6], [1, 3, 5, 7]),
+            ([0, 1, 4, 5], [2, 3, 6, 7]),
+            ([0, 1, 2, 3], [4, 5, 6, 7]),
+        ]
         for axis, (low, high) in enumerate(faces):
             apart = own[high].mean(axis=0) - own[low].mean(axis=0)
             assert grid.sizes(cells)[axis, n] == close(float(np.linalg.norm(apart)), rel=1e-13)
@@ -225,7 +229,9 @@ def test_cells_without_volume_are_skipped(at: tuple[float, float, float], dip: f
     assert grid.present.tolist() == [[[True, False, True]]] * 2
     volume = grid.volume.m_as("m**3")
     assert volume[:, 0, 0] == close([33.3 * 47.1 * 3.3, 38.6 * 47.1 * 3.3], rel=1e-7)
-    found = cross(route((at[0] + 20, at[1] + 9, at[2] - 50), (at[0] + 20, at[1] + 9, at[2] + 50)), grid)
+    found = cross(
+        route((at[0] + 20, at[1] + 9, at[2] - 50), (at[0] + 20, at[1] + 9, at[2] + 50)), grid
+    )
     assert found.cell.tolist() == [[0, 0, 0], [0, 0, 2]]
     assert found.length.m_as("m") == pytest.approx([3.3, 4.4], abs=1e-6)
     assert len(found.gaps) == 0
@@ -240,7 +246,9 @@ def test_a_grid_without_any_volume_is_crossed_nowhere() -> None:
 def test_a_thin_cell_is_a_cell() -> None:
     grid = cut([0, 100], [0, 100], [2000, 2000.001])
     assert grid.present.all()
-    assert cross(route((5, 5, 1990), (5, 5, 2010)), grid).length.m == pytest.approx([0.001], abs=1e-9)
+    assert cross(route((5, 5, 1990), (5, 5, 2010)), grid).length.m == pytest.approx(
+        [0.001], abs=1e-9
+    )
 
 
 def test_the_mask_and_the_corners_are_the_grid_s_own() -> None:

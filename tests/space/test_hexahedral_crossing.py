@@ -188,9 +188,7 @@ def test_a_path_reversed_has_the_reverse_rows(seed: int, start: Point, stop: Poi
     assert back.vector.m[long_back][::-1] == pytest.approx(-there.vector.m[long], abs=1e-8)
 
 
-@given(
-    seed=st.integers(0, 10**6), start=parts, stop=parts, at=st.floats(0.01, 0.99)
-)
+@given(seed=st.integers(0, 10**6), start=parts, stop=parts, at=st.floats(0.01, 0.99))
 def test_splitting_an_interval_changes_nothing(
     seed: int, start: Point, stop: Point, at: float
 ) -> None:
@@ -229,9 +227,7 @@ def test_turning_everything_about_the_vertical_changes_nothing(
     if bool(np.all([0.001 < part < 0.999 for part in (*start, *stop)])):
         assert turned.cell[other].tolist() == plain.cell[long].tolist()
         assert turned.md_in.m[other] == pytest.approx(plain.md_in.m[long], abs=1e-7)
-        assert turned.vector.m[other] == pytest.approx(
-            plain.vector.m[long] @ rotation.T, abs=1e-7
-        )
+        assert turned.vector.m[other] == pytest.approx(plain.vector.m[long] @ rotation.T, abs=1e-7)
         components = plain.in_si().components[long]
         assert turned.in_si().components[other] == pytest.approx(components, abs=1e-7)
 
@@ -393,7 +389,14 @@ def test_layers_that_pinch_out_along_the_path() -> None:
     nodes[2:, :, 2, 2] = 4.0
     grid = grid_of(corners_of(nodes))
     assert grid.present[:, 0, 1].tolist() == [True, True, False, False]
-    for x, thickness in ((2.0, 3.6), (8.0, 2.4), (15.0, 1.0), (19.99, 0.002), (20.0, 0.0), (33.0, 0)):
+    for x, thickness in (
+        (2.0, 3.6),
+        (8.0, 2.4),
+        (15.0, 1.0),
+        (19.99, 0.002),
+        (20.0, 0.0),
+        (33.0, 0),
+    ):
         found = cross(route((x, 5, 0), (x, 5, 12)), grid)
         sums = np.bincount(found.cell[:, 2], weights=found.length.m_as("m"), minlength=3)
         assert sums == pytest.approx([4.0, thickness, 8.0 - thickness], abs=1e-7)
@@ -480,7 +483,10 @@ def test_the_index_finds_what_a_look_at_every_cell_finds(
     low, high = corners.min(axis=3), corners.max(axis=3)
     size = np.array(shape) * [10.0, 12.0, 4.0]
     legs = [spread.uniform(-0.3, 1.3, (2, 3)) * size for _ in range(12)]
-    legs += [np.array([[5.0, 6.0, -9.0], [5.0, 6.0, 99.0]]), np.array([[-9.0, 6.0, 2.0], [400.0, 6.0, 2.0]])]
+    legs += [
+        np.array([[5.0, 6.0, -9.0], [5.0, 6.0, 99.0]]),
+        np.array([[-9.0, 6.0, 2.0], [400.0, 6.0, 2.0]]),
+    ]
     slack = 1e-6
     for start, stop in legs:
         found = {tuple(c) for c in grid.tree().near(start, stop, slack).tolist()}

@@ -1,4 +1,4 @@
-"""Surveys: printed examples, arcs in closed form, 50-digit slerp, the path's chords, CSV, errors."""
+"""Surveys: printed examples, arcs in closed form, 50-digit slerp, chords, CSV, errors."""
 
 import math
 from functools import partial
@@ -71,9 +71,7 @@ def recomputed(check: Check) -> Any:
     true = (radius * (1 - mp.cos(angle)), mpf(0), radius * mp.sin(angle))[what]
     if check.quantity == "test_hole":
         return true
-    method = (
-        trajectory.tangential if "tangential" in check.quantity else trajectory.angle_averaging
-    )
+    method = trajectory.tangential if "tangential" in check.quantity else trajectory.angle_averaging
     return abs(mp.fsum(method(leg)[what] for leg in hole(check)) - true)
 
 
@@ -243,9 +241,7 @@ def surveys(draw: st.DrawFn) -> tuple[Survey, list[tuple[float, ...]]]:
         np.radians(draw(st.lists(one, min_size=count, max_size=count)))
         for one in (angles, azimuths)
     )
-    legs = [
-        (depth[n + 1] - depth[n], i[n], a[n], i[n + 1], a[n + 1]) for n in range(count - 1)
-    ]
+    legs = [(depth[n + 1] - depth[n], i[n], a[n], i[n + 1], a[n + 1]) for n in range(count - 1)]
     if any(trajectory.dogleg(leg) > 3.0 for leg in legs):
         i = i / 3.0
         legs = [(leg[0], i[n], a[n], i[n + 1], a[n + 1]) for n, leg in enumerate(legs)]
@@ -316,7 +312,9 @@ def test_finer_chords_come_nearer_to_the_length_of_the_arc() -> None:
     lost = []
     for tolerance in ("1 m", "1 cm", "1 mm"):
         path = Survey(*given_, chord_tolerance=tolerance).path
-        lost.append(400.0 - float(np.linalg.norm(np.diff(path.points.m_as("m"), axis=0), axis=1).sum()))
+        lost.append(
+            400.0 - float(np.linalg.norm(np.diff(path.points.m_as("m"), axis=0), axis=1).sum())
+        )
         assert path.length.m_as("m") == close(400.0, rel=1e-14)
     assert lost[0] > lost[1] > lost[2] > 0.0
     assert lost[2] < 1e-3
@@ -325,9 +323,7 @@ def test_finer_chords_come_nearer_to_the_length_of_the_arc() -> None:
 def test_the_head_and_the_first_depth_shift_everything() -> None:
     inclination, azimuth = ["10 degree", "20 degree"], ["30 degree", "80 degree"]
     plain = Survey(["0 m", "120 m"], inclination, azimuth)
-    moved = Survey(
-        ["2500 m", "2620 m"], inclination, azimuth, head=("4000 m", "-250 m", "2480 m")
-    )
+    moved = Survey(["2500 m", "2620 m"], inclination, azimuth, head=("4000 m", "-250 m", "2480 m"))
     assert moved.measured_depth.m_as("m").tolist() == [2500.0, 2620.0]
     assert moved.points[0].m_as("m").tolist() == [4000.0, -250.0, 2480.0]
     assert moved.position("2550 m").m_as("m") - plain.position("50 m").m_as("m") == pytest.approx(
@@ -430,7 +426,11 @@ GOOD: dict[str, Any] = {
             DomainError,
             r"inclination: .*between 0 and 180 degrees.*\[2\]",
         ),
-        ({"inclination": np.array([0.0, 1.0, 2.0])}, UnitsError, "inclination: needs an incl.*degree"),
+        (
+            {"inclination": np.array([0.0, 1.0, 2.0])},
+            UnitsError,
+            "inclination: needs an incl.*degree",
+        ),
         ({"azimuth": metres([0.0, 1.0, 2.0])}, UnitsError, "azimuth: needs an angle"),
         (
             {"azimuth": ureg.Quantity(np.array([0.0, np.inf, 2.0]), "degree")},
@@ -555,7 +555,11 @@ def test_csv_in_other_units_and_with_options(tmp_path: FilePath) -> None:
         (TEXT.replace("[ft]", "[psi]"), UnitsError, "measured_depth: needs a position"),
         (TEXT.replace("azimuth", "bearing"), DomainError, "no column 'azimuth'.*'bearing"),
         (TEXT.replace("azimuth", "measured_depth"), DomainError, "'measured_depth' stands twice"),
-        (TEXT.replace("3600,25", "3600,abc"), DomainError, "row 3: inclination is no number: 'abc'"),
+        (
+            TEXT.replace("3600,25", "3600,abc"),
+            DomainError,
+            "row 3: inclination is no number: 'abc'",
+        ),
         (TEXT.replace("3600,25", "3600,"), DomainError, "row 3: inclination is no number: ''"),
         (TEXT.replace("3600,25,45", "3600,25"), DomainError, "row 3: azimuth is no number: ''"),
         (TEXT.replace("3600", "nan"), DomainError, "row 3: measured_depth is no number: 'nan'"),
@@ -573,9 +577,7 @@ def test_csv_in_other_units_and_with_options(tmp_path: FilePath) -> None:
         (b"\xff\xfe\x00measured", DomainError, "well.csv: the file is no CSV text"),
     ],
 )
-def test_bad_csv(
-    text: str | bytes, error: type[Exception], words: str, tmp_path: FilePath
-) -> None:
+def test_bad_csv(text: str | bytes, error: type[Exception], words: str, tmp_path: FilePath) -> None:
     with pytest.raises(error, match=words):
         survey_of(tmp_path, text)
 

@@ -228,9 +228,10 @@ class Survey:
         for n, (count, length) in enumerate(zip(self.chords, self._legs.length, strict=True)):
             parts = np.arange(1, int(count) + 1) / count
             position, _direction = self._legs.at(np.full(len(parts), n), parts)
-            position[-1] = self._points[n + 1]
+            depth = self._md[n] + parts * length
+            position[-1], depth[-1] = self._points[n + 1], self._md[n + 1]
             points.append(position)
-            depths.append(self._md[n] + parts * length)
+            depths.append(depth)
         return Path(
             as_quantity(kinds.COORDINATE, np.concatenate(points), "si"),
             measured_depth=as_quantity(kinds.COORDINATE, np.concatenate(depths), "si"),

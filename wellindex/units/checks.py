@@ -90,14 +90,17 @@ class Tally(Checks):
             self.lost = bad if self.lost is None else bad | self.lost
 
     def caution(self, bad: Any, reason: str, shown: Any = None) -> None:
-        """Count doubtful elements, each once for a reason; `report` warns once."""
+        """Count doubtful elements that are not lost, once for a reason; `report` warns once."""
         if bad is not False and np.any(bad):
             bad = np.broadcast_to(bad, self.size)
             known = self.doubted.get(reason)
             fresh = bad if known is None else bad & ~known
+            if self.lost is not None:
+                fresh = fresh & ~self.lost
             self.doubted[reason] = bad if known is None else bad | known
             count = int(np.count_nonzero(fresh))
-            self.cautions[reason] = self.cautions.get(reason, 0) + count
+            if count:
+                self.cautions[reason] = self.cautions.get(reason, 0) + count
 
     def report(self) -> None:
         """Warn once for all that was marked or doubted."""
