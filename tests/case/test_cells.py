@@ -12,7 +12,9 @@ from typing import Any
 import numpy as np
 import pytest
 
-from tests.case.cases import BUNDLED, command, written
+from tests.case.cases import BUNDLED, command, document, written
+from wellindex import CaseError
+from wellindex.case.schema import read_case
 
 TEXT = BUNDLED.read_text(encoding="utf-8")
 SHAPE = (21, 21, 5)
@@ -243,6 +245,10 @@ GRIDS: dict[str, tuple[bytes, str]] = {
         _member(b"\x93NUMPY\x01\x00\x20\x00" + b"__import__('os').getcwd()".ljust(31) + b"\n"),
         "cannot read 'corners'",
     ),
+    "a later format": (
+        _member(b"\x93NUMPY\x03\x00\x00\x00\x00\x00"),
+        "cannot read 'corners': arrays of format (3, 0) are not read",
+    ),
     "packed otherwise": (
         _member(b"corners", method=zipfile.ZIP_LZMA),
         "cannot read 'corners': it is packed in a way that numpy does not write",
@@ -407,6 +413,36 @@ def test_bad_keys_are_refused_in_words(name: str, tmp_path: Path) -> None:
     for part in words:
         assert part in answer.err
     assert list(tmp_path.iterdir()) == [case]
+
+
+def test_corners_beyond_what_a_float_holds(tmp_path: Path) -> None:
+    np.savez(tmp_path / "grid.npz", corners=_corners() * 1e304)
+    answer = command("check", written(tmp_path, _with(CORNERS.replace('"ft"', '"km"'))))
+    assert answer.code == 2
+    assert "grid.npz: its numbers cannot be calculated with" in answer.err
+
+
+def test_a_disk_that_fails(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def fail(*_args: object) -> None:
+        raise OSError(5, "Input/output error")
+
+    np.savez(tmp_path / "grid.npz", corners=_corners())
+    monkeypatch.setattr("wellindex.case.beside.hashlib.file_digest", fail)
+    answer = command("check", written(tmp_path, _with(CORNERS)))
+    assert answer.code == 2
+    assert "grid.npz: cannot read the file: Input/output error" in answer.err
+
+
+def test_a_document_without_a_folder_names_no_files() -> None:
+    with pytest.raises(CaseError, match=r"grid\.npz: this case was not read from a folder"):
+        read_case(document(_with(CORNERS)))
+
+
+def test_rock_as_a_text(tmp_path: Path) -> None:
+    text = TEXT.replace("[units]", 'rock = "sand"\n[units]').replace("[rock]", "[other]")
+    answer = command("check", written(tmp_path, text))
+    assert answer.code == 2
+    assert "rock: needs a table with the keys kx, kz, ky, permeability, net_to_gross" in answer.err
 
 
 def test_an_npz_too_large(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:

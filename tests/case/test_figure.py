@@ -142,6 +142,42 @@ def test_the_axes_are_named_with_units_and_depth_runs_down() -> None:
         assert f"measured depth {depth} ft" in texts
 
 
+def test_a_vertical_well_is_named_and_scaled() -> None:
+    outcome = _outcome(STRAIGHT)
+    with outcome.units():
+        drawn = figure.draw(outcome.wells[0], outcome.case.grid)
+    along = drawn.axes[0]
+    assert along.get_xlabel() == "east of the well [ft]"
+    box = along.get_window_extent()
+    across, down = np.ptp(along.get_xlim()), np.ptp(along.get_ylim())
+    times = f"{(box.height / down) / (box.width / across):.2g}"
+    assert (
+        along.get_title() == f"Section along the well, depth at {times} times the horizontal scale"
+    )
+
+
+def test_labels_are_left_out_where_there_is_no_room(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(figure, "_MOST_LABELS", 0)
+    monkeypatch.setattr(figure, "_NARROWEST", 0.5)
+    monkeypatch.setattr(figure, "_MOST_ENDS", 3)
+    outcome = _outcome(BUNDLED)
+    with outcome.units():
+        drawn = figure.draw(outcome.wells[0], outcome.case.grid)
+    assert [list(axes.texts) for axes in drawn.axes[:2]] == [[], []]
+
+
+def test_a_well_that_turns_back_shows_its_cells_twice() -> None:
+    """East along y = 350 m, then back west a layer lower: the trace passes each column twice."""
+    path, rows, grid = _well([(250, 350, 1005), (550, 350, 1005), (250, 350, 1015)])
+    cut = section(path, rows, grid)
+    outlines = [o.corners for o in cut.outlines if o.cell == (3, 3, 0)]
+    assert len(outlines) == 2
+    strip = (cut.across[1] - cut.across[0]) / 240
+    spans = sorted((o[:, 0].min(), o[:, 0].max()) for o in outlines)
+    # 300 m to 400 m east lies 50 m to 150 m after the start, and 150 m to 250 m after the turn.
+    assert np.allclose(spans, [(50.0, 150.0), (450.0, 550.0)], atol=strip)
+
+
 def test_colours_run_from_light_to_dark_in_grey() -> None:
     """Luminance by ITU-R BT.709, weights 0.2126, 0.7152, 0.0722 (from memory of the standard)."""
     from matplotlib import colormaps

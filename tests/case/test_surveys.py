@@ -148,6 +148,10 @@ BAD = {
         _case(f"{HEAD}, {_rows(STATIONS[:1])}"),
         "wells[0].survey: a survey has at least two stations",
     ),
+    "list of numbers": (
+        _case(f"{HEAD}, {_lists(STATIONS)}".replace('"8280 ft"', "8280")),
+        "wells[0].survey.measured_depth[1]: needs a position; got 8280; give a text with its unit",
+    ),
     "no station": (_case(f"{HEAD}, stations = []"), "stations: needs a list of stations; got a"),
     "station of two": (
         _case(f"{HEAD}, stations = [['1 m', '0 degree']]"),

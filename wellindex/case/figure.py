@@ -30,6 +30,8 @@ _SIZE = (11.0, 5.8)
 _DOTS_PER_INCH = 150
 _MOST_LABELS = 24
 _MOST_ENDS = 12
+#: A column narrower than this part of the plan has no room for its numbers.
+_NARROWEST = 0.15
 _FOOT = (
     "Screening calculation: not for well control, nor a substitute for licensed engineering and "
     "local regulation."
@@ -160,6 +162,14 @@ def _draw_cells(
     )
 
 
+def _open_stretches(well: SolvedWell) -> list[tuple[float, float]]:
+    """Return where the well is open in the grid: measured depths in SI, from and to."""
+    starts, stops = well.couplings.md_in.m_as("m"), well.couplings.md_out.m_as("m")
+    joined = np.isclose(starts[1:], stops[:-1], rtol=0.0, atol=1e-6)
+    first, last = starts[np.r_[True, ~joined]], stops[np.r_[~joined, True]]
+    return list(zip(first.tolist(), last.tolist(), strict=True))
+
+
 def _draw_path(axes: Axes, line: Array, measured_depth: Array, well: SolvedWell) -> None:
     """Draw the path thin, and thick where it is open in the grid."""
     from matplotlib.patheffects import Normal, Stroke
@@ -169,12 +179,7 @@ def _draw_path(axes: Axes, line: Array, measured_depth: Array, well: SolvedWell)
 
     numbers = _lengths(line)[0]
     axes.plot(*numbers.T, color="black", linewidth=1.1, path_effects=halo(1.1), label="well path")
-    rows = zip(
-        well.couplings.md_in.m_as("m").tolist(),
-        well.couplings.md_out.m_as("m").tolist(),
-        strict=True,
-    )
-    for n, (start, stop) in enumerate(rows):
+    for n, (start, stop) in enumerate(_open_stretches(well)):
         inner = measured_depth[(measured_depth > start) & (measured_depth < stop)]
         depths = np.concatenate(([start], inner, [stop]))
         part = np.stack([np.interp(depths, measured_depth, x) for x in numbers.T], axis=1)
@@ -204,7 +209,11 @@ def _draw_section(
     (top, bottom), _unit = _lengths(cut.depths)
     axes.set_xlim(left, right)
     axes.set_ylim(bottom, top)
-    axes.set_xlabel(f"horizontal distance along the well from its first point [{unit}]")
+    flat = float(cut.path[-1, 0]) > 0.0
+    words = (
+        "horizontal distance along the well from its first point" if flat else "east of the well"
+    )
+    axes.set_xlabel(f"{words} [{unit}]")
     axes.set_ylabel(f"depth [{unit}]")
     _label_layers(axes, cut)
     _label_ends(axes, cut, well)
@@ -212,12 +221,10 @@ def _draw_section(
 
 def _label_ends(axes: Axes, cut: Section, well: SolvedWell) -> None:
     """Write the measured depth at both ends of each open stretch."""
-    starts, stops = well.couplings.md_in.m_as("m"), well.couplings.md_out.m_as("m")
-    joined = np.isclose(starts[1:], stops[:-1], rtol=0.0, atol=1e-6)
-    ends = np.concatenate((starts[np.r_[True, ~joined]], stops[np.r_[~joined, True]]))
+    ends = [end for stretch in _open_stretches(well) for end in stretch]
     if len(ends) > _MOST_ENDS:
         return
-    for depth in ends.tolist():
+    for depth in ends:
         at = [float(np.interp(depth, cut.measured_depth, x)) for x in cut.path.T]
         (x, z, shown), unit = _lengths([*at, depth])
         at_right = at[0] > 0.3 * cut.across[0] + 0.7 * cut.across[1]
@@ -279,10 +286,9 @@ def _draw_plan(
     axes.set_xlabel(f"x, east [{unit}]")
     axes.set_ylabel(f"y, north [{unit}]")
     axes.set_title("Plan: each column by its largest index", fontsize=10)
-    if sum(coupled) > _MOST_LABELS:
-        return
+    narrowest = _NARROWEST * (seen.east[1] - seen.east[0])
     for outline, near, index in zip(seen.outlines, coupled, indices, strict=True):
-        if near:
+        if near and np.ptp(outline.corners[:, 0]) > narrowest:
             _label_column(axes, outline, seen.path, dark=scale(index or 0.0) > 0.55)
 
 
@@ -339,9 +345,7 @@ def _state_exaggeration(figure: Figure, axes: Axes) -> None:
     box = axes.get_window_extent()
     (left, right), (bottom, top) = axes.get_xlim(), axes.get_ylim()
     exaggeration = (box.height / abs(top - bottom)) / (box.width / abs(right - left))
-    words = (
-        f"depth exaggerated {exaggeration:.2g} times" if exaggeration > 1.05 else "true to scale"
-    )
-    if exaggeration < 0.95:
-        words = f"depth shortened to {exaggeration:.2g} of its true scale"
+    words = "true to scale"
+    if abs(exaggeration - 1.0) > 0.05:
+        words = f"depth at {exaggeration:.2g} times the horizontal scale"
     axes.set_title(f"Section along the well, {words}", fontsize=10)
