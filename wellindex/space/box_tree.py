@@ -43,8 +43,8 @@ class BoxTree:
         for start in range(0, self._corners.shape[0], _SPAN):
             slab = self._corners[start : start + _SPAN]
             hidden = ~self._exists[start : start + _SPAN, :, :, np.newaxis]
-            low = np.where(hidden, np.inf, slab.min(axis=3))
-            high = np.where(hidden, -np.inf, slab.max(axis=3))
+            low = np.where(hidden, np.inf, _over_corners(slab, np.minimum))
+            high = np.where(hidden, -np.inf, _over_corners(slab, np.maximum))
             lows.append(_merged(low, np.minimum))
             highs.append(_merged(high, np.maximum))
         return np.concatenate(lows), np.concatenate(highs)
@@ -64,6 +64,14 @@ class BoxTree:
         corners = self._corners[tuple(nodes.T)]
         met = _met(start, stop, corners.min(axis=1) - slack, corners.max(axis=1) + slack)
         return nodes[met]
+
+
+def _over_corners(corners: Array, smallest: Any) -> Array:
+    """Return the least (or largest) of the eight corners; a reduction costs three times more."""
+    least: Array = corners[..., 0, :].copy()
+    for c in range(1, 8):
+        smallest(least, corners[..., c, :], out=least)
+    return least
 
 
 def _merged(values: Array, smallest: Any) -> Array:

@@ -47,11 +47,11 @@ def shape_weights(at: Array) -> Array:
 
 
 def _jacobians(corners: Array, at: Array) -> Array:
-    """Return the determinant of the trilinear map of cells (n, 8, 3) at points (m, 3), (m, n)."""
+    """Return the determinant of the trilinear map of cells (8, 3, n) at points (m, 3), (m, n)."""
     slopes = np.ascontiguousarray(shape_derivatives(at).transpose(0, 2, 1).reshape(-1, 8))
     # One matrix product for all cells: rows are (point, axis), columns (coordinate, cell).
-    flat = corners.transpose(1, 2, 0).reshape(8, -1)
-    east, north, down = (slopes @ flat).reshape(len(at), 3, 3, -1).swapaxes(0, 1)
+    products = slopes @ corners.reshape(8, -1)
+    east, north, down = products.reshape(len(at), 3, 3, -1).swapaxes(0, 1)
     determinant: Array = (
         east[:, 0] * (north[:, 1] * down[:, 2] - north[:, 2] * down[:, 1])
         - east[:, 1] * (north[:, 0] * down[:, 2] - north[:, 2] * down[:, 0])
@@ -134,11 +134,12 @@ class HexahedralGrid:
         for start in range(0, len(exists), _CHUNK):
             part = slice(start, start + _CHUNK)
             # Seen from a corner: coordinates far from zero would cost digits.
-            cells = self._corners[part] - self._corners[part, :1]
+            cells = self._corners[part].transpose(1, 2, 0)
+            cells = np.ascontiguousarray(cells - cells[0])
             jacobians = _jacobians(cells, points)
             # The Jacobian is quadratic along each axis, so two Gauss points give it exactly.
             volume = jacobians[: len(gauss)].mean(axis=0)
-            rounding = _NO_VOLUME * np.ptp(cells, axis=1).prod(axis=1)
+            rounding = _NO_VOLUME * np.ptp(cells, axis=0).prod(axis=0)
             # A cell turned inside out in one part may have no volume in all: it is no pinch-out.
             low, high = jacobians.min(axis=0), jacobians.max(axis=0)
             least = np.maximum(_FOLDED * np.maximum(-low, high), rounding)
