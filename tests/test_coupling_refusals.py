@@ -30,8 +30,8 @@ VERTICAL = route((75.0, 120.0, 0.0), (75.0, 120.0, 21.0))
     [
         ([("2 m", "6 m"), ("5 m", "8 m")], DomainError, "interval 1 overlaps or precedes interv"),
         ([("9 m", "12 m"), ("2 m", "6 m")], DomainError, "list intervals in order along the path"),
-        ([("6 m", "2 m")], DomainError, "interval 0 does not run downwards"),
-        ([("6 m", "6 m")], DomainError, "interval 0 does not run downwards"),
+        ([("6 m", "2 m")], DomainError, "interval 0 does not run forwards along the path"),
+        ([("6 m", "6 m")], DomainError, "interval 0 does not run forwards along the path"),
         ([("-1 m", "6 m")], DomainError, "leaves the path, which runs from 0 m to 21 m"),
         ([("1 m", "6 m"), ("8 m", "22 m")], DomainError, "interval 1 leaves the path"),
         (("1 m", "6 m"), ShapeError, r"pairs \(from, to\) of measured depth; got \(2,\)"),
@@ -91,7 +91,7 @@ def test_invalid_nan_keeps_the_other_rows() -> None:
     given_ = {"rw": "0.1 m", "skin": skin, "intervals": intervals}
     with pytest.raises(DomainError, match=r"zero or negative.*\[1\]"):
         couple(VERTICAL, GRID, ROCK, **given_)
-    with pytest.warns(AssumptionWarning, match="1 elements are not a number: 1 x ln") as caught:
+    with pytest.warns(AssumptionWarning, match="1 element is not a number: 1 x ln") as caught:
         rows = couple(VERTICAL, GRID, ROCK, **given_, invalid="nan")
     assert len(caught) == 1
     assert np.isnan(rows.wi.m).tolist() == [False, True, False]

@@ -236,7 +236,7 @@ EDITS = {
     ),
     "interval upside down": (
         edited(('"8315 ft"', '"8300 ft"')),
-        "wells[0].open[1]: open[1] does not run downwards",
+        "wells[0].open[1]: open[1] does not run forwards along the path",
     ),
     "intervals overlap": (
         edited(('"8303 ft"', '"8280 ft"')),

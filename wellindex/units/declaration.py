@@ -152,7 +152,7 @@ class Declaration:
             close = nearest(value, parameter.choices) if isinstance(value, str) else ""
             remedy = close.removeprefix("; ") or "use one of these"
             raise Problem(DomainError, f"one of {choices}", repr(value), remedy)
-        if int in parameter.instances:
+        if parameter.instances == (int,):
             return _whole_number(value)
         if parameter.instances and not isinstance(value, parameter.instances):
             wanted = " or ".join(kind.__name__ for kind in parameter.instances)
