@@ -266,3 +266,10 @@ def test_every_class_of_the_library_is_here() -> None:
         WellState, Workings,
     }  # fmt: skip
     assert covered == classes
+
+
+def test_a_pickled_table_cannot_be_written_either() -> None:
+    copy = pickle.loads(pickle.dumps(layered_couplings()))
+    with pytest.raises(ValueError, match="read-only"):
+        copy.rows_in_si().r0[:] = 1.0
+    assert not copy.equals(3)

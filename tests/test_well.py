@@ -1,6 +1,7 @@
 """Wells: rate and bottom-hole pressure, head by hand, second methods, refusals."""
 
 import math
+import warnings
 from fractions import Fraction
 from functools import partial
 from typing import Any
@@ -456,3 +457,20 @@ def test_a_rate_that_is_not_a_number_can_be_marked() -> None:
     with pytest.warns(AssumptionWarning, match="1 element is not a number: 1 x rate must be"):
         state = layered_well().at_rate(rates, block_pressure="200 bar", invalid="nan")
     assert np.isnan(state.pwf.magnitude).tolist() == [False, True]
+
+
+@given(data=st.data())
+def test_a_well_shut_by_its_pressure_has_no_rate(data: st.DataObject) -> None:
+    # The pressure at which nothing flows out, put in again: what is left is rounding.
+    well = layered_well()
+    pressures = [data.draw(st.floats(1e7, 4e7)) for _ in range(len(well.couplings))]
+    blocks = ureg.Quantity(pressures, "Pa")
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore", BackflowWarning)
+        shut = well.at_rate("0 m**3/day", block_pressure=blocks)
+        again = well.at_pressure(shut.pwf, block_pressure=blocks)
+    assert (
+        abs(again.rate.m_as("sm3/day"))
+        < 1e-9 * abs(again.coupling_surface_rate).max().m_as("sm3/day") + 1e-9
+    )
+    assert not shut.well_backflow

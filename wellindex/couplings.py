@@ -76,13 +76,17 @@ class Couplings:
     def __len__(self) -> int:
         return len(self._rows.length)
 
-    def equals(self, other: Couplings) -> bool:
+    def __setstate__(self, state: dict[str, Any]) -> None:
+        # A pickle forgets that its arrays cannot be written.
+        self.__dict__.update(state, _rows=Rows(*map(frozen, state["_rows"])))
+
+    def equals(self, other: object) -> bool:
         """Tell whether another table has the same rows.
 
         Parameters
         ----------
         other : Couplings
-            Any table of couplings, such as a pickled copy.
+            Any table of couplings, such as a pickled copy; anything else is not equal.
 
         Examples
         --------
@@ -93,7 +97,9 @@ class Couplings:
         >>> rows.equals(couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m"))
         True
         """
-        return len(self) == len(other) and all(
+        if not isinstance(other, Couplings) or len(self) != len(other):
+            return False
+        return all(
             np.array_equal(one, two, equal_nan=True)
             for one, two in zip(self._rows, other.rows_in_si(), strict=True)
         )

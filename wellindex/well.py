@@ -306,7 +306,10 @@ class Well:
         rates = self._transmissivity * drawdown
         # A rate that was given is the total; a sum that is rounding only is none.
         total = np.sum(rates, axis=-1)
-        rounding = np.abs(total) <= _SAME_PRESSURE * np.sum(np.abs(rates), axis=-1)
+        pressures = np.abs(blocks) + np.abs(wellbore)
+        rounding = np.abs(total) <= _SAME_PRESSURE * np.sum(
+            self._transmissivity * pressures, axis=-1
+        )
         total = np.where(rounding, 0.0, total) if rate is None else np.where(below, np.nan, rate)
         flow = Flow(pwf, centres, wellbore, drawdown, rates, total)
         state = WellState(flow, self.couplings, self._basis)
