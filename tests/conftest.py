@@ -9,7 +9,7 @@ from hypothesis import settings
 from wellindex import set_unit_system
 
 settings.register_profile("ci", derandomize=True, max_examples=60, deadline=None)
-settings.register_profile("thorough", max_examples=1000, deadline=None)
+settings.register_profile("thorough", max_examples=300, deadline=None)
 settings.load_profile(os.environ.get("WELLINDEX_HYPOTHESIS", "ci"))
 
 

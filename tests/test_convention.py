@@ -228,7 +228,7 @@ def test_bad_numbers() -> None:
         code.number("1 mD*ft", viscosity="0 cP")
     with pytest.raises(UnitsError, match="wi: needs a well index"):
         code.number(1.0, viscosity="1 cP")
-    with pytest.raises(UnitsError, match="number: needs a plain number"):
+    with pytest.raises(UnitsError, match=r"number: needs a factor \(a plain number\)"):
         code.well_index("1 mD*ft", viscosity="1 cP")
     with pytest.raises(UnitsError, match="to is a Convention, not str"):
         code.convert(1.0, "mD*ft")
@@ -239,3 +239,36 @@ def test_a_convention_is_frozen_and_says_what_it_contains() -> None:
     assert code.words() == "2 pi, 1/viscosity, density, the whole open length"
     with pytest.raises(FrozenInstanceError):
         code.unit = "mD*ft"  # type: ignore[misc]
+
+
+FLAGS = [name for name in FIELDS if name != "unit"]
+
+
+@pytest.mark.parametrize("flag", FLAGS)
+@pytest.mark.parametrize("value", [1, 0, "yes", None, 1.0, np.True_, [True]])
+def test_a_flag_is_true_or_false(flag: str, value: Any) -> None:
+    with pytest.raises(UnitsError, match=rf"^Convention\(\): {flag} is True or False$"):
+        Convention("mD*ft", **{flag: value})
+
+
+@pytest.mark.parametrize("unit", ["cP*rb/day/psig", "cP*m**3/day/barg", "mD*ft*psig/psi"])
+def test_a_gauge_unit_is_refused_at_construction(unit: str) -> None:
+    with pytest.raises(
+        UnitsError, match=r"^Convention\(\): .* holds a unit with a zero of its own"
+    ):
+        Convention(unit)
+
+
+@pytest.mark.parametrize("number", [-1.0, -1e-30, np.array([1.0, -2.0]), math.nan, math.inf])
+def test_a_negative_or_infinite_number_is_refused(number: Any) -> None:
+    code, other = Convention("mD*ft"), Convention("cP*rb/day/psi")
+    for call in (partial(code.well_index, number), partial(code.convert, number, other)):
+        with pytest.raises(DomainError, match=r"^Convention\(\): 1 argument is wrong\n  number: "):
+            call()
+    with pytest.raises(DomainError, match=r"^Convention\(\): 1 argument is wrong\n  wi: "):
+        code.number(ureg.Quantity(number, "m**3"))
+
+
+def test_zero_is_the_index_of_tight_rock() -> None:
+    code, other = Convention("mD*ft"), Convention("cP*rb/day/psi")
+    assert code.well_index(0.0).m == code.convert(0.0, other) == code.number("0 m**3") == 0.0

@@ -40,13 +40,26 @@ DX, DY, DZ = [40.0, 70.0, 50.0], [90.0, 60.0, 80.0], [5.0, 9.0, 7.0]
 GRID = blocks_of(DX, DY, DZ)
 ROCK = Permeability("90 mD", "30 mD", "10 mD")
 MIDDLE = {"x": 75.0, "y": 120.0, "z": 10.0}
+#: Where a path runs on a side of its blocks. West, south and top: an inner face, which belongs to
+#: the block on its east, north or lower side. The others: sides of the grid.
+ON_SIDE = {
+    "west": ("x", 40.0),
+    "east": ("x", 160.0),
+    "south": ("y", 90.0),
+    "north": ("y", 230.0),
+    "top": ("z", 5.0),
+    "bottom": ("z", 21.0),
+}
+CORNERS = {"x": ("south", "bottom"), "y": ("east", "top"), "z": ("west", "north")}
 VERTICAL = route((75.0, 120.0, 0.0), (75.0, 120.0, 21.0))
 
 
-def straight(direction: str, *, up: bool = False) -> Path:
-    """A path through the whole grid along one axis."""
+def straight(direction: str, *, up: bool = False, placement: str = "centre") -> Path:
+    """A path through the whole grid along one axis, on the sides that the placement names."""
     length = dict(zip("xyz", map(sum, (DX, DY, DZ)), strict=True))[direction]
-    ends = [MIDDLE | {direction: end} for end in (0.0, length)]
+    sides = {"centre": (), "corner": CORNERS[direction]}.get(placement, (placement,))
+    across = MIDDLE | dict(ON_SIDE[side] for side in sides)
+    ends = [across | {direction: end} for end in (0.0, length)]
     points = [tuple(end[axis] for axis in "xyz") for end in (reversed(ends) if up else ends)]
     return route(*points)  # type: ignore[arg-type]
 
@@ -69,9 +82,8 @@ def exact(
 @pytest.mark.parametrize("placement", ["centre", "corner"])
 def test_rows_at_50_digits(direction: str, up: bool, placement: str) -> None:
     k = (9e-14, 3e-14, 1e-14)
-    rows = couple(
-        straight(direction, up=up), GRID, rock(*k), rw="0.1 m", skin=1.5, placement=placement
-    )
+    path = straight(direction, up=up, placement=placement)
+    rows = couple(path, GRID, rock(*k), rw="0.1 m", skin=1.5, placement=placement)
     sizes = {"x": DX, "y": DY, "z": DZ}[direction]
     axis = "xyz".index(direction)
     assert rows.cell[:, axis].tolist() == ([2, 1, 0] if up else [0, 1, 2])
@@ -91,7 +103,8 @@ def test_rows_at_50_digits(direction: str, up: bool, placement: str) -> None:
 )
 def test_placement_on_a_side(direction: str, placement: str) -> None:
     k = (9e-14, 3e-14, 1e-14)
-    rows = couple(straight(direction), GRID, rock(*k), rw="0.1 m", placement=placement)
+    path = straight(direction, placement=placement)
+    rows = couple(path, GRID, rock(*k), rw="0.1 m", placement=placement)
     assert rows.sector.tolist() == [0.5] * 3
     expected = [
         exact(cell, direction, length, k, rw=0.1, placement=placement)
@@ -104,6 +117,60 @@ def test_placement_on_a_side(direction: str, placement: str) -> None:
 def test_a_side_that_the_well_crosses_is_refused(direction: str, side: str) -> None:
     with pytest.raises(DomainError, match=f"'{side}' is a side that a well along {direction}"):
         couple(straight(direction), GRID, ROCK, rw="0.1 m", placement=side)
+
+
+@pytest.mark.parametrize("direction", "xyz")
+@pytest.mark.parametrize("placement", ["corner", *ON_SIDE])
+def test_a_path_that_is_not_on_the_side_it_names(direction: str, placement: str) -> None:
+    if placement != "corner" and ON_SIDE[placement][0] == direction:
+        return  # the well crosses it: refused elsewhere
+    with pytest.raises(DomainError) as caught:
+        couple(straight(direction), GRID, ROCK, rw="0.1 m", placement=placement)
+    said = str(caught.value)
+    pairs = [("west", "east"), ("south", "north"), ("top", "bottom")]
+    pairs.pop("xyz".index(direction))
+    sides = " or ".join(pairs[0]) if placement == "corner" else placement
+    first = {"x": (0, 1, 1), "y": (1, 0, 1), "z": (1, 1, 0)}[direction]
+    assert said.startswith(f"couple(): placement {placement!r} says that the well stands on the ")
+    assert f"on the {sides} side of its blocks, but the path does not run there" in said
+    assert f"in block {first}: move the path onto the side, or leave the placement out" in said
+
+
+@pytest.mark.parametrize("direction", "xyz")
+def test_a_corner_needs_a_side_of_each_pair(direction: str) -> None:
+    one, two = CORNERS[direction]
+    for on, off in ((one, two), (two, one)):
+        path = straight(direction, placement=on)
+        with pytest.raises(DomainError, match=f"the .*{off}.* side of its blocks, but the path"):
+            couple(path, GRID, ROCK, rw="0.1 m", placement="corner")
+    path = straight(direction, placement="corner")
+    assert couple(path, GRID, ROCK, rw="0.1 m", placement="corner").sector.tolist() == [0.25] * 3
+    for side in CORNERS[direction]:
+        rows = couple(path, GRID, ROCK, rw="0.1 m", placement=side)
+        assert rows.sector.tolist() == [0.5] * 3
+
+
+def test_an_inner_face_is_the_west_south_or_upper_side_of_its_owner() -> None:
+    # x = 40 m is between blocks 0 and 1 and belongs to block 1, whose west side it is.
+    path = route((40.0, 120.0, 0.0), (40.0, 120.0, 21.0))
+    rows = couple(path, GRID, ROCK, rw="0.1 m", placement="west")
+    assert rows.cell.tolist() == [[1, 1, 0], [1, 1, 1], [1, 1, 2]]
+    with pytest.raises(DomainError, match=r"on the east side .* in block \(1, 1, 0\)"):
+        couple(path, GRID, ROCK, rw="0.1 m", placement="east")
+
+
+@pytest.mark.parametrize("side", ["west", "east"])
+def test_a_side_is_met_to_a_millionth_of_the_width(side: str) -> None:
+    # Block 1 is 70 m wide, block 2 is 50 m wide.
+    face, inwards, width = {"west": (40.0, 1.0, 70.0), "east": (160.0, -1.0, 50.0)}[side]
+    for part, fits in ((0.9e-6, True), (1.1e-6, False), (1e-3, False)):
+        x = face + inwards * part * width
+        path = route((x, 120.0, 0.0), (x, 120.0, 21.0))
+        if fits:
+            assert len(couple(path, GRID, ROCK, rw="0.1 m", placement=side)) == 3
+        else:
+            with pytest.raises(DomainError, match=f"stands on the {side} side of its blocks"):
+                couple(path, GRID, ROCK, rw="0.1 m", placement=side)
 
 
 def test_partial_opening_of_blocks() -> None:
@@ -323,8 +390,12 @@ def test_tight_layers_have_an_index_of_zero_and_a_note() -> None:
     kx[:, :, 1] = 0.0
     rows = couple(VERTICAL, GRID, rock(kx, 1e-13, 0.0), rw="0.1 m", skin=-3.0)
     assert (rows.wi.m == 0.0).tolist() == [False, True, False]
-    assert [bool(note) for note in rows.notes] == [False, True, False]
-    assert rows.notes[1] == "no permeability across the well: index 0"
+    # Block (1, 1): dx 70 m beside 40 and 50 m, dy 60 m beside 90 and 80 m.
+    uneven = (
+        "dx of a neighbour differs by a factor of 1.75 and dy of a neighbour differs by a factor "
+        "of 1.5: the formula assumes equal blocks"
+    )
+    assert rows.notes == [uneven, "no permeability across the well: index 0", uneven]
     level = couple(straight("x"), GRID, rock(1e-13, 1e-13, 0.0), rw="0.1 m")
     assert level.wi.m.tolist() == [0.0] * 3
 

@@ -91,7 +91,7 @@ def test_invalid_nan_keeps_the_other_rows() -> None:
     given_ = {"rw": "0.1 m", "skin": skin, "intervals": intervals}
     with pytest.raises(DomainError, match=r"zero or negative.*\[1\]"):
         couple(VERTICAL, GRID, ROCK, **given_)
-    with pytest.warns(AssumptionWarning, match="1 elements are not a number: 1 x ln") as caught:
+    with pytest.warns(AssumptionWarning, match="1 element is not a number: 1 x ln") as caught:
         rows = couple(VERTICAL, GRID, ROCK, **given_, invalid="nan")
     assert len(caught) == 1
     assert np.isnan(rows.wi.m).tolist() == [False, True, False]

@@ -3,8 +3,10 @@
 import csv
 import json
 import math
+import pickle
 import re
 from functools import partial
+from itertools import pairwise
 from pathlib import Path as FilePath
 from typing import Any
 
@@ -14,7 +16,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from tests import strategies
-from tests.builders import blocks_of, layered_couplings, metres, route, square_metres
+from tests.builders import blocks_of, layered_couplings, metres, rock, route, square_metres
 from tests.strategies import Block
 from wellindex import AssumptionWarning, Couplings, Permeability, couple, unit_system, ureg
 from wellindex.table import Column, aligned
@@ -22,6 +24,7 @@ from wellindex.table import Column, aligned
 SYSTEMS = ["metric", "oilfield", "si", "darcy"]
 MEASURED = ("md_in", "md_out", "depth", "block_depth", "length", "k_normal", "r0", "rw", "wi")
 PLAIN = ("skin", "sector", "scale")
+SIDES = {"x": ("west", "east"), "y": ("south", "north"), "z": ("top", "bottom")}
 UNITS = {
     "metric": {"length": "m", "k_normal": "mD", "wi": "cP*m**3/day/bar"},
     "oilfield": {"length": "ft", "k_normal": "mD", "wi": "cP*rb/day/psi"},
@@ -36,8 +39,13 @@ def rows_of(block: Block, placement: str, parts: int) -> Couplings:
     """Couplings of one block, opened in so many places along it."""
     grid = blocks_of([block.dx], [block.dy], [block.dz])
     along = getattr(block, "d" + block.direction)
-    middle = {"x": block.dx / 2, "y": block.dy / 2, "z": block.dz / 2}
-    ends = [tuple((middle | {block.direction: end})[a] for a in "xyz") for end in (0.0, along)]
+    at = {"x": block.dx / 2, "y": block.dy / 2, "z": block.dz / 2}
+    for axis, sides in SIDES.items():
+        if placement in (sides[0], "corner"):
+            at[axis] = 0.0
+        elif placement == sides[1]:
+            at[axis] = getattr(block, "d" + axis)
+    ends = [tuple((at | {block.direction: end})[a] for a in "xyz") for end in (0.0, along)]
     marks = np.linspace(0.0, along, 2 * parts).reshape(parts, 2)
     k = (square_metres(getattr(block, name)) for name in ("kx", "ky", "kz"))
     return couple(
@@ -163,10 +171,10 @@ def test_the_aligned_table(system: str) -> None:
 
 def test_notes_stand_in_the_table_only_where_there_are_some() -> None:
     assert "note" not in layered_couplings().table()
-    grid = blocks_of([50.0], [50.0], [5.0, 5.0])
-    kx = ureg.Quantity(np.array([[[1.0, 0.0]]]), "mD")
+    grid = blocks_of([50.0] * 3, [50.0] * 3, [5.0, 5.0])
+    kx = ureg.Quantity(np.broadcast_to([1.0, 0.0], (3, 3, 2)), "mD")
     rows = couple(
-        route((25, 25, 0), (25, 25, 10)), grid, Permeability(kx, "1 mD", "0 mD"), rw="0.1 m"
+        route((75, 75, 0), (75, 75, 10)), grid, Permeability(kx, "1 mD", "0 mD"), rw="0.1 m"
     )
     first, second = rows.table().splitlines()[3:]
     assert "note" in rows.table().splitlines()[0]
@@ -182,3 +190,81 @@ def test_a_table_without_units_has_no_line_for_them() -> None:
 def test_repr_says_what_it_is() -> None:
     rows: Any = layered_couplings()
     assert repr(rows) == "Couplings(4 rows, z, method 'projection')"
+
+
+def wandering(turns: list[float], marks: list[float]) -> Couplings:
+    """A vertical path up and down through ten layers, open in places."""
+    depths = [0.0, *turns]
+    path = route(*((75.0, 75.0, depth) for depth in depths))
+    total = float(np.abs(np.diff(depths)).sum())
+    opened = np.array(sorted(marks)).reshape(-1, 2) * total
+    k = np.linspace(1e-14, 9e-13, 90).reshape(3, 3, 10)
+    grid = blocks_of([50.0] * 3, [50.0] * 3, [10.0] * 10)
+    return couple(path, grid, rock(k, k, k), rw="0.1 m", skin=1.0, intervals=metres(opened))
+
+
+@given(
+    turns=st.lists(st.integers(1, 99), min_size=1, max_size=6).filter(
+        lambda turns: all(one != two for one, two in pairwise(turns))
+    ),
+    marks=st.lists(st.integers(0, 100), min_size=2, max_size=6, unique=True).filter(
+        lambda marks: len(marks) % 2 == 0
+    ),
+)
+def test_one_number_for_each_block(turns: list[int], marks: list[int]) -> None:
+    rows = wandering([float(t) for t in turns], [m / 100 for m in marks])
+    sums: dict[tuple[int, ...], float] = {}
+    for cell, wi in zip(rows.cell.tolist(), rows.wi.m_as("m**3"), strict=True):
+        sums[tuple(cell)] = sums.get(tuple(cell), 0.0) + float(wi)
+    cell, wi = rows.by_cell()
+    assert [tuple(c) for c in cell.tolist()] == list(sums)  # in the order of the first visit
+    assert wi.m_as("m**3") == close(np.array(list(sums.values())), rel=1e-13)
+    assert wi.check("[length]**3")
+    assert cell.dtype.kind == "i"
+
+
+def test_one_number_for_each_block_in_the_unit_system_in_force() -> None:
+    rows = wandering([80.0, 20.0], [0.1, 0.5, 0.6, 0.9])
+    assert len(rows.by_cell()[0]) < len(rows)
+    with unit_system("oilfield"):
+        assert rows.by_cell()[1].units == ureg.Unit("cP*rb/day/psi")
+    cell, wi = layered_couplings().by_cell()
+    assert cell.tolist() == layered_couplings().cell.tolist()
+    assert wi.m.tolist() == layered_couplings().wi.m.tolist()
+
+
+def test_a_block_with_an_unusable_row_has_no_number() -> None:
+    with pytest.warns(AssumptionWarning, match="1 element is not a number"):
+        rows = layered_couplings(
+            skin=[0.0, -50.0, 0.0],
+            intervals=[("0 m", "1 m"), ("2 m", "3 m"), ("5 m", "6 m")],
+            invalid="nan",
+        )
+    assert np.isnan(rows.by_cell()[1].m).tolist() == [True, False]
+
+
+def test_equal_tables() -> None:
+    rows = layered_couplings()
+    assert rows.equals(rows)
+    assert rows.equals(layered_couplings())
+    assert rows.equals(pickle.loads(pickle.dumps(rows)))
+    with unit_system("oilfield"):
+        assert rows.equals(layered_couplings())
+    with pytest.warns(AssumptionWarning, match="4 elements are not a number"):
+        lost = layered_couplings(skin=-50.0, invalid="nan")
+    assert lost.equals(pickle.loads(pickle.dumps(lost)))
+
+
+@pytest.mark.parametrize(
+    "changed",
+    [
+        {"skin": 1.5000001},
+        {"rw": "0.1000001 m"},
+        {"net_to_gross": 0.999999},
+        {"intervals": [("0 m", "19.49 m")]},
+        {"intervals": [("0 m", "3 m")]},
+    ],
+)
+def test_tables_that_differ(changed: dict[str, Any]) -> None:
+    assert not layered_couplings().equals(layered_couplings(**changed))
+    assert not layered_couplings(**changed).equals(layered_couplings())

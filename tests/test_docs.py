@@ -86,6 +86,43 @@ def test_every_public_name_is_in_the_reference() -> None:
     assert sorted(documented) == sorted(wellindex.__all__)
 
 
+def _callables() -> dict[str, Any]:
+    """Every function, class and method of the reference, by its name there."""
+    found: dict[str, Any] = {}
+    for page in sorted((DOCS / "reference").glob("*.rst")):
+        for directive in re.split(r"^(?=\.\. auto)", page.read_text(), flags=re.MULTILINE):
+            head = re.match(r"\.\. auto(function|class):: (\w+)", directive)
+            if head is None:
+                continue
+            thing = getattr(wellindex, head[2])
+            found[head[2]] = thing
+            members = re.search(r":members:(.*)", directive)
+            hidden = re.search(r":exclude-members:(.*)", directive)
+            names = set(members[1].replace(",", " ").split() or vars(thing)) if members else set()
+            names -= set(hidden[1].replace(",", " ").split() if hidden else ())
+            for name in sorted(names):
+                if not name.startswith("_") and callable(getattr(thing, name)):
+                    found[f"{head[2]}.{name}"] = getattr(thing, name)
+    return found
+
+
+CALLABLES = _callables()
+
+
+def test_the_callables_of_the_reference_are_found() -> None:
+    assert {"well_index", "Well.at_rate", "TensorGrid.centre", "Couplings.by_cell"} <= set(
+        CALLABLES
+    )
+    assert "Couplings.in_si" not in CALLABLES
+
+
+@pytest.mark.parametrize("name", CALLABLES)
+def test_every_public_callable_has_an_example(name: str) -> None:
+    text = CALLABLES[name].__doc__ or ""
+    assert re.search(r"^ *Examples\n *-+\n", text, re.MULTILINE), name
+    assert ">>> " in text
+
+
 def test_published_values_are_met_on_the_page_of_checks(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.syspath_prepend(DOCS / "scripts")
     checks = _script("check_tables")

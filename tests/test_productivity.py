@@ -1,9 +1,11 @@
 """The productivity index against worked examples, exact arithmetic and its refusals."""
 
+import math
 from functools import partial
 from operator import attrgetter
 from typing import Any
 
+import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -157,3 +159,34 @@ def test_average_and_boundary_differ_by_three_quarters() -> None:
     )
     resistance = float(mp.log(mp.mpf(2980) / mp.mpf("0.328")))
     assert average / boundary == close(resistance / (resistance - 0.75), rel=1e-13)
+
+
+@given(
+    rw=strategies.wellbore_radii(),
+    spread=strategies.logarithmic(1.01, 1e5),
+    nearer=st.sampled_from([0.0, -1e-9, -1.0]),
+)
+def test_a_resistance_of_exactly_zero_is_refused(rw: float, spread: float, nearer: float) -> None:
+    re = spread * rw
+    given_: dict[str, Any] = {
+        "against": "boundary", "k": 1e-13, "h": 10.0, "re": re, "rw": rw, "viscosity": 1e-3,
+        "formation_volume_factor": 1.2,
+    }  # fmt: skip
+    nothing = -math.log(re / rw)
+    with pytest.raises(DomainError, match=r"ln\(re/rw\) and skin leave no flow resistance"):
+        productivity_index.si(**given_, skin=nothing + nearer)
+    with pytest.raises(DomainError, match=r"no flow resistance .* at \[1\]"):
+        productivity_index.si(**given_, skin=np.array([1.0, nothing + nearer]))
+    assert productivity_index.si(**given_, skin=nothing + 1e-3) > 0.0
+
+
+def test_a_resistance_of_exactly_zero_against_the_average() -> None:
+    # ln(e**2) - 3/4 + skin is 0 in floats where skin is 3/4 - ln(re/rw).
+    re = math.exp(2.0)
+    given_: dict[str, Any] = {"k": 1e-13, "h": 10.0, "re": re, "rw": 1.0, "viscosity": 1e-3}
+    nothing = 0.75 - math.log(re)
+    assert math.log(re) + nothing - 0.75 == 0.0
+    with pytest.raises(DomainError, match="no flow resistance"):
+        productivity_index.si(
+            **given_, against="average", formation_volume_factor=1.2, skin=nothing
+        )

@@ -6,7 +6,7 @@ from typing import Any
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import assume, given
 from hypothesis import strategies as st
 
 from tests import strategies
@@ -68,8 +68,10 @@ def test_a_point_of_the_block_has_one_radius(block: Block, angle: float, share: 
     k = {"kx": block.kx, "ky": block.ky}
     true = closed_form.stretched_radius(x=x, y=y, **k)
     wellbore = closed_form.equivalent_wellbore_radius(rw=block.rw, k1=block.kx, k2=block.ky)
-    if radius <= wellbore:
-        with pytest.raises(DomainError, match="lies inside the wellbore"):
+    inner = float(wellbore) * math.exp(max(0.0, -block.skin))
+    assume(abs(radius / inner - 1.0) > 1e-9)
+    if radius < inner:
+        with pytest.raises(DomainError, match=r"lies inside the (wellbore|effective radius)"):
             profile_of(block, 1e7, 2e7, radius=metres([radius]))
         return
     expected = closed_form.radial_pressure(
@@ -121,11 +123,29 @@ def test_anisotropic_rock_is_stretched() -> None:
     assert "stretched" in repr(profile)
 
 
-@pytest.mark.parametrize("skin", [0.0, 4.0, -1.0])
+@pytest.mark.parametrize("skin", [0.0, 4.0])
 def test_the_drop_of_skin_lies_at_the_wellbore(skin: float) -> None:
     profile = radial_profile(**PLANE, **PRESSURES, skin=skin)
     resistance = math.log((profile.r0 / profile.rw).m_as("dimensionless")) + skin
     assert profile.pressure[0].m_as("bar") == close(150 + 50 * skin / resistance, rel=1e-13)
+
+
+@pytest.mark.parametrize("skin", [-0.5, -1.0, -3.0])
+def test_a_negative_skin_is_a_larger_wellbore(skin: float) -> None:
+    # The effective radius rw exp(-skin), from memory of the source: Matthews and Russell,
+    # "Pressure Buildup and Flow Tests in Wells", SPE Monograph 1 (1967).
+    profile = radial_profile(**PLANE, **PRESSURES, skin=skin)
+    inner = profile.rw.m_as("m") * math.exp(-skin)
+    radii, pressures = profile.radius.m_as("m"), profile.pressure.m_as("bar")
+    assert radii[0] == close(inner, rel=1e-14)
+    assert pressures[0] == close(150.0, rel=1e-13)
+    assert np.all(pressures[1:] > 150.0)
+    # A wellbore of that size without skin has the same line; PLANE's r0 does not depend on rw.
+    larger = PLANE | {"rw": ureg.Quantity(0.1 * math.exp(-skin), "m")}
+    same = radial_profile(**larger, **PRESSURES, radius=profile.radius)
+    assert pressures == close(same.pressure.m_as("bar"), rel=1e-12)
+    with pytest.raises(DomainError, match=r"inside the effective radius rw exp\(-skin\) of"):
+        radial_profile(**PLANE, **PRESSURES, skin=skin, radius=metres([0.999 * inner]))
 
 
 def test_default_radii_run_from_the_wellbore_to_the_far_side() -> None:

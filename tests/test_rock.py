@@ -186,3 +186,14 @@ def test_a_conductivity_of_zero_is_tight_rock() -> None:
 def test_bad_conductivities(changed: dict[str, Any], error: type[Exception], words: str) -> None:
     with pytest.raises(error, match=words):
         permeability_from_conductivity(**(WATER | changed))
+
+
+def test_errors_of_a_tensor_speak_of_it() -> None:
+    with pytest.raises(UnitsError, match=r"^Permeability\.from_tensor\(\): 1 argument is wrong"):
+        Permeability.from_tensor("90 ft")  # type: ignore[arg-type]
+
+
+@pytest.mark.parametrize("k", ["1 m/day", "1e-5 m/s", "3 ft/day"])
+def test_a_conductivity_is_no_permeability_and_the_way_is_said(k: str) -> None:
+    with pytest.raises(UnitsError, match="permeability_from_conductivity turns a hydraulic condu"):
+        Permeability(k, k, k)

@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from tests.builders import LAYERS, TOP, layered_well, pascals
-from wellindex import BackflowWarning, WellState, unit_system, ureg
+from wellindex import BackflowWarning, ShapeError, WellState, unit_system, ureg
 
 RATES = {
     "metric": ("sm3/day", "rm3/day"),
@@ -116,3 +116,16 @@ def test_many_states_print_as_a_summary() -> None:
 def test_block_pressure_is_the_one_given() -> None:
     given_ = pascals([2e7, 2.1e7, 2e7, 2.2e7])
     assert producing().block_pressure.m_as("Pa") == close(given_.m, rel=1e-14)
+
+
+def test_repr_says_what_it_is() -> None:
+    state = layered_well().at_rate("100 sm3/day", block_pressure="200 bar")
+    assert repr(state) == f"WellState(producer, {state.pwf}, 100 sm3/day, 120 rm3/day)"
+    many = layered_well().at_pressure(pascals([[1e7, 1.2e7]]), block_pressure="200 bar")
+    assert repr(many) == "WellState(producer, 2 states of shape (1, 2))"
+
+
+def test_many_states_make_no_table() -> None:
+    many = layered_well().at_pressure(pascals([1e7, 1.2e7]), block_pressure="200 bar")
+    with pytest.raises(ShapeError, match="a table shows one state; this holds many"):
+        many.columns()

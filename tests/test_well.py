@@ -1,6 +1,7 @@
 """Wells: rate and bottom-hole pressure, head by hand, second methods, refusals."""
 
 import math
+import warnings
 from fractions import Fraction
 from functools import partial
 from typing import Any
@@ -11,6 +12,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from scipy.optimize import brentq
 
+from tests import strategies
 from tests.builders import (
     BASE,
     GRAVITY,
@@ -290,7 +292,75 @@ def test_a_shut_well_lets_its_couplings_flow_into_one_another() -> None:
         state = WELL.at_rate("0 sm3/day", block_pressure=BLOCKS)
     assert state.backflow.any()
     assert not state.backflow.all()
-    assert state.reservoir_rate.m == pytest.approx(0.0, abs=1e-9)
+    assert state.reservoir_rate.m == 0.0
+    assert state.rate.m == 0.0
+    assert state.well_backflow is False
+
+
+@pytest.mark.parametrize("role", ["producer", "injector"])
+@given(
+    blocks=st.lists(st.floats(5e6, 6e7), min_size=4, max_size=4),
+    unit=st.sampled_from(["sm3/day", "stb/day", "m**3/s", "rb/day"]),
+)
+@pytest.mark.filterwarnings("ignore::wellindex.BackflowWarning")
+def test_crossflow_of_a_shut_well_is_no_backflow_of_the_well(
+    role: str, blocks: list[float], unit: str
+) -> None:
+    well = layered_well(role=role)
+    state = well.at_rate(ureg.Quantity(0.0, unit), block_pressure=pascals(blocks))
+    assert state.rate.m == state.reservoir_rate.m == 0.0
+    assert state.well_backflow is False
+    expected = by_hand(well, state.pwf.m_as("Pa"), blocks, density=950.0, mu=5e-4)
+    floor = 1e-12 * float(ROWS.wi.m_as("m**3").max()) / 5e-4 * max(blocks)
+    against = -1.0 if role == "producer" else 1.0
+    for rate, backflow in zip(expected, state.backflow, strict=True):
+        if abs(rate) > floor:
+            assert backflow == (rate * against > 0.0)
+    assert "as a whole well" not in state.backflow_words()
+
+
+@given(blocks=st.lists(st.floats(5e6, 6e7), min_size=24, max_size=24))
+@pytest.mark.filterwarnings("ignore::wellindex.BackflowWarning")
+def test_crossflow_of_shut_wells_in_a_batch(blocks: list[float]) -> None:
+    pressures = pascals(np.reshape(blocks, (2, 3, 4)))
+    state = WELL.at_rate("0 stb/day", block_pressure=pressures)
+    assert state.rate.m.tolist() == state.reservoir_rate.m.tolist() == [[0.0] * 3] * 2
+    assert state.well_backflow.tolist() == [[False] * 3] * 2
+    assert "in 0 as a whole well" in state.backflow_words() or not state.backflow.any()
+
+
+@given(rate=st.floats(0.0, 5e-3), blocks=st.lists(st.floats(2e7, 3e7), min_size=4, max_size=4))
+@pytest.mark.filterwarnings("ignore::wellindex.BackflowWarning")
+def test_a_rate_that_was_given_is_the_rate(rate: float, blocks: list[float]) -> None:
+    with unit_system("si"):
+        state = WELL.at_rate(ureg.Quantity(rate, "m**3/s"), block_pressure=pascals(blocks))
+        assert state.reservoir_rate.m == rate
+        surface = WELL.at_rate(ureg.Quantity(rate, "sm3/s"), block_pressure=pascals(blocks))
+        # Through the volume factor and back: two roundings of 2**-53 each.
+        assert surface.rate.m == pytest.approx(rate, rel=2.0**-52, abs=0.0)
+
+
+@given(
+    k=strategies.permeabilities(),
+    drops=st.lists(st.integers(-40_000, 40_000), min_size=4, max_size=4),
+    extra=st.sampled_from([0, -3, 3]),
+)
+@pytest.mark.filterwarnings("ignore::wellindex.BackflowWarning")
+def test_a_sum_that_is_rounding_only_is_zero(k: float, drops: list[int], extra: int) -> None:
+    # Five equal blocks at one depth: rates are in proportion to whole numbers of pascal.
+    grid = blocks_of([64.0] * 5, [64.0], [16.0])
+    rows = couple(route((0.0, 32.0, 8.0), (320.0, 32.0, 8.0)), grid, rock(k, k, k), rw="0.1 m")
+    five = [*drops, extra - sum(drops)]
+    blocks = pascals([300_000.0 + drop for drop in five])
+    state = Well(rows, OIL).at_pressure("3 bar", block_pressure=blocks)
+    assert (state.coupling_drawdown.m_as("Pa").round(6) == five).all()
+    if extra == 0:
+        assert state.rate.m == state.reservoir_rate.m == 0.0
+        assert state.well_backflow is False
+    else:
+        wi = float(rows.wi.m_as("m**3")[0])
+        assert state.reservoir_rate.m_as("m**3/s") == close(extra * wi / 9e-4, rel=1e-6)
+        assert state.well_backflow is (extra < 0)
 
 
 def test_surface_and_reservoir_rates_differ_by_the_volume_factor() -> None:
@@ -384,6 +454,23 @@ def test_repr_and_thickness_average() -> None:
 
 def test_a_rate_that_is_not_a_number_can_be_marked() -> None:
     rates = ureg.Quantity([100.0, np.nan], "sm3/day")
-    with pytest.warns(AssumptionWarning, match="1 elements are not a number: 1 x rate must be"):
+    with pytest.warns(AssumptionWarning, match="1 element is not a number: 1 x rate must be"):
         state = layered_well().at_rate(rates, block_pressure="200 bar", invalid="nan")
     assert np.isnan(state.pwf.magnitude).tolist() == [False, True]
+
+
+@given(data=st.data())
+def test_a_well_shut_by_its_pressure_has_no_rate(data: st.DataObject) -> None:
+    # The pressure at which nothing flows out, put in again: what is left is rounding.
+    well = layered_well()
+    pressures = [data.draw(st.floats(1e7, 4e7)) for _ in range(len(well.couplings))]
+    blocks = ureg.Quantity(pressures, "Pa")
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore", BackflowWarning)
+        shut = well.at_rate("0 m**3/day", block_pressure=blocks)
+        again = well.at_pressure(shut.pwf, block_pressure=blocks)
+    assert (
+        abs(again.rate.m_as("sm3/day"))
+        < 1e-9 * abs(again.coupling_surface_rate).max().m_as("sm3/day") + 1e-9
+    )
+    assert not shut.well_backflow

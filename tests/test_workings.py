@@ -1,9 +1,11 @@
 """The shown calculation: its formulas evaluated again from the printed numbers alone."""
 
 import math
+import pickle
 import re
 from typing import Any
 
+import numpy as np
 import pytest
 from mpmath import iv  # type: ignore[import-untyped]
 
@@ -25,6 +27,13 @@ from wellindex.workings import Step
 
 SYSTEMS = ["metric", "oilfield", "si", "darcy"]
 PLACEMENTS = ["centre", "corner", "west", "north"]
+ON_SIDE = {
+    "corner": {"x": 0.0, "y": 0.0, "z": 70.0},
+    "west": {"x": 0.0},
+    "north": {"y": 180.0},
+    "south": {"y": 0.0},
+    "bottom": {"z": 70.0},
+}
 NUMBER = r"-?\d[\d.]*(?:e[+-]?\d+)?"
 UNIT = r"(?!x\b|sqrt\b)[A-Za-z]\w*(?:\*\*\d+)?(?:[*/][A-Za-z]\w*(?:\*\*\d+)?)*"
 PRINTED = re.compile(rf"(?P<number>{NUMBER})(?: (?P<unit>{UNIT}))?")
@@ -69,14 +78,18 @@ def assert_agrees(step: Step) -> None:
 
 
 def placed_rows(placement: str, direction: str = "z") -> Couplings:
-    """Couplings along one axis of a small uneven grid."""
+    """Couplings along one axis of a small uneven grid, on the sides that the placement names."""
     grid = blocks_of([80.0, 50.0], [120.0, 60.0], [30.0, 40.0])
-    ends = {
-        "x": ((0.0, 70.0, 20.0), (130.0, 70.0, 20.0)),
-        "z": ((60.0, 70.0, 0.0), (60.0, 70.0, 65.0)),
+    start, stop = {
+        "x": ({"x": 0.0, "y": 70.0, "z": 20.0}, {"x": 130.0}),
+        "z": ({"x": 60.0, "y": 70.0, "z": 0.0}, {"z": 65.0}),
     }[direction]
+    for axis, place in ON_SIDE.get(placement, {}).items():
+        if axis != direction:
+            start[axis] = place
+    ends = [tuple(end[axis] for axis in "xyz") for end in (start, start | stop)]
     return couple(
-        route(*ends),
+        route(*ends),  # type: ignore[arg-type]
         grid,
         rock(2.3e-13, 7.1e-14, 1.9e-14),
         rw="0.11 m",
@@ -100,8 +113,10 @@ def test_the_shown_index_is_right(system: str, placement: str) -> None:
         assert last.a <= rows.wi[n].m_as("m**3") <= last.b
 
 
-@pytest.mark.parametrize("placement", ["centre", "corner", "south", "bottom"])
-def test_a_well_along_x_names_y_and_z(placement: str) -> None:
+@pytest.mark.parametrize(
+    ("placement", "layer"), [("centre", 0), ("corner", 1), ("south", 0), ("bottom", 1)]
+)
+def test_a_well_along_x_names_y_and_z(placement: str, layer: int) -> None:
     shown = workings(placed_rows(placement, "x"), 1)
     for step in shown.steps[1]:
         assert_agrees(step)
@@ -109,7 +124,7 @@ def test_a_well_along_x_names_y_and_z(placement: str) -> None:
     assert "k = sqrt(ky kz)" in text
     assert "dy^2" in text
     assert "dx" not in text
-    assert text.startswith("Coupling 1 in block (1, 0, 0), well along x\n====")
+    assert text.startswith(f"Coupling 1 in block (1, 0, {layer}), well along x\n====")
 
 
 @pytest.mark.parametrize("system", SYSTEMS)
@@ -194,8 +209,34 @@ def test_bad_workings() -> None:
     with pytest.raises(DomainError, match="row -1 is not in the table"):
         workings(rows, -1)
     with pytest.raises(DomainError, match="belongs to other couplings"):
-        workings(rows, state=state_of(layered_couplings(), "150 bar"))
+        workings(rows, state=state_of(layered_couplings(skin=1.6), "150 bar"))
+    for boolean in (True, np.True_):
+        with pytest.raises(UnitsError, match="row: needs a whole number"):
+            workings(rows, boolean)
+    with pytest.raises(UnitsError, match=r"row: needs a whole number; got 1\.0"):
+        workings(rows, 1.0)  # type: ignore[arg-type]
+    with pytest.raises(DomainError, match="row 4 is not in the table"):
+        workings(rows, np.int64(4))
     with pytest.raises(ShapeError, match="many moments"):
         workings(rows, state=state_of(rows, ureg.Quantity([150.0, 160.0], "bar")))
     with pytest.raises(UnitsError, match="couplings: needs Couplings"):
         workings("all")  # type: ignore[arg-type]
+
+
+@pytest.mark.parametrize("row", [np.int8(2), np.int64(2), np.uint16(2)])
+def test_a_row_counted_by_numpy(row: Any) -> None:
+    rows = layered_couplings()
+    assert str(workings(rows, row)) == str(workings(rows, 2))
+
+
+def test_a_state_of_equal_couplings_will_do() -> None:
+    rows = layered_couplings()
+    state = state_of(rows, "150 bar")
+    expected = str(workings(rows, state=state))
+    for copied in (layered_couplings(), pickle.loads(pickle.dumps(rows))):
+        assert str(workings(copied, state=state)) == expected
+    assert str(workings(rows, state=pickle.loads(pickle.dumps(state)))) == expected
+
+
+def test_workings_say_what_they_are() -> None:
+    assert repr(workings(layered_couplings())) == "Workings(of 4 couplings; print it to read them)"

@@ -111,7 +111,8 @@ class Convention:
     Raises
     ------
     UnitsError
-        A unit whose dimension does not fit what the number contains.
+        A unit whose dimension does not fit what the number contains, or a gauge unit; a field that
+        is no bool.
     DomainError
         Fields that exclude each other: a surface volume is no mass. A first index, an order or a
         sign that is none.
@@ -185,7 +186,14 @@ class Convention:
         return {base: exponent for base, exponent in dimension.items() if exponent}
 
     def words(self) -> str:
-        """Say in words what the number contains."""
+        """Say in words what the number contains.
+
+        Examples
+        --------
+        >>> from wellindex import Convention
+        >>> Convention("kg/s/bar", viscosity=True, mass=True).words()
+        '2 pi, 1/viscosity, density, the whole open length'
+        """
         parts = [
             "2 pi" if self.two_pi else "no 2 pi",
             "1/viscosity" if self.viscosity else "no viscosity",
@@ -220,6 +228,13 @@ class Convention:
         ------
         UnitsError
             Something that the number contains is not given; the message says what.
+
+        Examples
+        --------
+        >>> from wellindex import Convention
+        >>> per_bar = Convention("kg/s/bar", viscosity=True, mass=True)
+        >>> print(f"{per_bar.number('1e-12 m**3', viscosity='0.1 cP', density='900 kg/m**3'):.4f}")
+        0.9000
         """
         given = _read_contents(wi=wi, **data)
         return self.sign * given["wi"] * self._factor(self._powers(), given) / _si_value(self.unit)
@@ -243,7 +258,15 @@ class Convention:
         UnitsError
             Something that the number contains is not given; the message says what.
         DomainError
-            A relative permeability of zero, which no number can be divided by.
+            A negative number; a relative permeability of zero, which no number can be divided by.
+
+        Examples
+        --------
+        >>> from wellindex import Convention
+        >>> per_bar = Convention("kg/s/bar", viscosity=True, mass=True)
+        >>> wi = per_bar.well_index(0.9, viscosity="0.1 cP", density="900 kg/m**3")
+        >>> print(f"{wi.to('m**3'):.3e}")
+        1.000e-12 m**3
         """
         given = _read_contents(number=number, **data)
         powers = {name: -power for name, power in self._powers().items()}
@@ -270,6 +293,17 @@ class Convention:
         ------
         UnitsError
             Something that one of the two contains, and the other does not, is not given.
+        DomainError
+            A negative number.
+
+        Examples
+        --------
+        >>> from wellindex import Convention
+        >>> per_psi = Convention("stb/day/psi", viscosity=True, formation_volume_factor=True)
+        >>> metric = Convention("cP*m**3/day/bar")
+        >>> number = per_psi.convert(2.0, metric, viscosity="0.8 cP", formation_volume_factor=1.25)
+        >>> print(f"{number:.4f} {metric.unit}")
+        4.6118 cP*m**3/day/bar
         """
         if not isinstance(to, Convention):
             raise UnitsError(f"convert(): to is a Convention, not {type(to).__name__}")

@@ -175,10 +175,16 @@ def couple(
         A part of an interval outside the grid; a path on an outer side of the grid;
         ln(r0/rw) below 1 or ln(r0/rw) + skin below 0.5.
 
+    Notes
+    -----
+    The closed form holds for equal blocks all around the well's own. Where the grid has none beside
+    it, or one of another width, ``Couplings.notes`` says so, without a warning: the index may then
+    be off by tens of per cent, above all for a horizontal well in a thin layer.
+
     References
     ----------
-    .. [1] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eqs. 14 and 16;
-       doi:10.2118/10528-PA.
+    .. [1] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eqs. 14 and 16 (from memory
+       of the source); doi:10.2118/10528-PA.
 
     Examples
     --------
@@ -221,7 +227,9 @@ def _notes(rows: Rows, crossed: Crossed, grid: Grid, found: crossing.Crossings) 
     around = [""] * len(rows.length)
     if isinstance(grid, TensorGrid):
         directions = [AXES[axis] for axis in crossed.dominant]
-        around = surroundings(rows.cell, grid, directions, crossed.placement)
+        around = surroundings(
+            found.in_si().midpoint, rows.cell, grid, directions, crossed.placement
+        )
     notes = [
         [_TIGHT] if k == 0.0 else [note] if note else []
         for k, note in zip(rows.k_normal, around, strict=True)

@@ -61,16 +61,41 @@ class Couplings:
 
     def __init__(self, rows: Rows, *, crossed: Crossed, method: str, notes: list[str]) -> None:
         self._rows = Rows(*map(frozen, rows))
-        self._crossed = crossed
+        self._crossed = crossed._replace(
+            components=frozen(crossed.components),
+            sizes=frozen(crossed.sizes),
+            k=frozen(crossed.k),
+        )
         self._method = method
         self._notes = tuple(notes)
 
     def __len__(self) -> int:
         return len(self._rows.length)
 
-    def equals(self, other: Couplings) -> bool:
-        """Tell whether another table has the same rows."""
-        return len(self) == len(other) and all(
+    def __setstate__(self, state: dict[str, Any]) -> None:
+        # A pickle forgets that its arrays cannot be written.
+        self.__dict__.update(state, _rows=Rows(*map(frozen, state["_rows"])))
+
+    def equals(self, other: object) -> bool:
+        """Tell whether another table has the same rows.
+
+        Parameters
+        ----------
+        other : Couplings
+            Any table of couplings, such as a pickled copy; anything else is not equal.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> rows.equals(couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m"))
+        True
+        """
+        if not isinstance(other, Couplings) or len(self) != len(other):
+            return False
+        return all(
             np.array_equal(one, two, equal_nan=True)
             for one, two in zip(self._rows, other.rows_in_si(), strict=True)
         )
@@ -117,7 +142,12 @@ class Couplings:
 
     @property
     def notes(self) -> list[str]:
-        """What the reader of each row must know; empty where there is nothing."""
+        """What the reader of each row must know; empty where there is nothing.
+
+        A block without permeability across the well; a side on which the grid has no block; a
+        neighbour whose width differs by more than 5 %. The closed form holds for equal blocks all
+        around.
+        """
         return list(self._notes)
 
     @property
@@ -231,7 +261,19 @@ class Couplings:
         ]
 
     def table(self) -> str:
-        """Return an aligned text table in the unit system in force."""
+        """Return an aligned text table in the unit system in force.
+
+        A column of notes stands at its end where a row has one.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> print(rows.table()[:37])
+        i  j  k  md_in  md_out  depth  block_
+        """
         columns = self.columns()
         return aligned(columns if any(self.notes) else columns[:-1])
 
@@ -242,6 +284,19 @@ class Couplings:
         ----------
         path : str or path
             The file to write; one that exists is replaced.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> import os, tempfile
+        >>> with tempfile.TemporaryDirectory() as folder:
+        ...     rows.to_csv(os.path.join(folder, "rows.csv"))
+        ...     with open(os.path.join(folder, "rows.csv")) as file:
+        ...         print(file.readline()[:24])
+        i,j,k,md_in [m],md_out [
         """
         Table(self.columns()).to_csv(path)
 
@@ -252,6 +307,19 @@ class Couplings:
         ----------
         path : str or path
             The file to write; one that exists is replaced.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> import json, os, tempfile
+        >>> with tempfile.TemporaryDirectory() as folder:
+        ...     rows.to_json(os.path.join(folder, "rows.json"))
+        ...     with open(os.path.join(folder, "rows.json")) as file:
+        ...         print(json.load(file)["length"])
+        {'unit': 'm', 'values': [10.0]}
         """
         Table(self.columns()).to_json(path)
 

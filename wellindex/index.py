@@ -169,9 +169,10 @@ def well_index(
     References
     ----------
     .. [1] D. W. Peaceman, "Interpretation of Well-Block Pressures in Numerical Reservoir
-       Simulation", SPE Journal 18(3), 183-194 (1978), eq. 20; doi:10.2118/6893-PA.
-    .. [2] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eqs. 14 and 16;
-       doi:10.2118/10528-PA.
+       Simulation", SPE Journal 18(3), 183-194 (1978), eq. 20 (from memory of the source);
+       doi:10.2118/6893-PA.
+    .. [2] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eqs. 14 and 16 (from memory
+       of the source); doi:10.2118/10528-PA.
 
     Examples
     --------

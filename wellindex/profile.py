@@ -22,11 +22,17 @@ _POINTS = 121
 class RadialProfile:
     """Pressure over radius around a well, and where it equals the block's.
 
-    Attributes
-    ----------
-    coordinates : {"true", "stretched"}
-        In anisotropic rock the pressure depends on a radius only in stretched coordinates,
-        x (ky/kx)**(1/4) and y (kx/ky)**(1/4); all radii here are then in these.
+    `radial_profile` makes it.
+
+    Examples
+    --------
+    >>> from wellindex import radial_profile
+    >>> profile = radial_profile(dx="100 m", dy="100 m", kx="160 mD", ky="10 mD", rw="0.1 m",
+    ...                          pwf="150 bar", p_block="200 bar", radius=["1 m", "10 m"])
+    >>> profile.coordinates
+    'stretched'
+    >>> print(f"{profile.pressure:.2f}")
+    [169.10 190.24] bar
     """
 
     def __init__(
@@ -41,7 +47,16 @@ class RadialProfile:
         self._pressure = pressure
         self._r0 = r0
         self._rw = rw
-        self.coordinates = coordinates
+        self._coordinates = coordinates
+
+    @property
+    def coordinates(self) -> Literal["true", "stretched"]:
+        """Which coordinates all radii here are in, "true" or "stretched".
+
+        In anisotropic rock the pressure depends on a radius only in stretched coordinates,
+        x (ky/kx)**(1/4) and y (kx/ky)**(1/4).
+        """
+        return self._coordinates
 
     @property
     def radius(self) -> Quantity:
@@ -119,7 +134,8 @@ def radial_profile(
 
     References
     ----------
-    .. [1] D. W. Peaceman, SPE Journal 18(3), 183-194 (1978), fig. 3; doi:10.2118/6893-PA.
+    .. [1] D. W. Peaceman, SPE Journal 18(3), 183-194 (1978), fig. 3 (from memory of the
+       source); doi:10.2118/6893-PA.
     .. [2] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983); doi:10.2118/10528-PA.
 
     Examples

@@ -72,7 +72,7 @@ class Permeability:
                     f"Permeability(): an array needs the shape (nx, ny, nz); got {shape}"
                 )
         self._si = tuple(frozen(k) if np.ndim(k) else k for k in (kx, ky, kz))
-        self.shape: tuple[int, ...] = shapes.pop() if shapes else ()
+        self._shape: tuple[int, ...] = shapes.pop() if shapes else ()
 
     @classmethod
     @reads
@@ -103,6 +103,11 @@ class Permeability:
         """
         _check_axes(tensor)
         return cls(*(as_quantity(kinds.PERMEABILITY, tensor[i, i]) for i in range(3)))
+
+    @property
+    def shape(self) -> tuple[int, ...]:
+        """Shape of the arrays, (nx, ny, nz); () where all blocks are alike."""
+        return self._shape
 
     @property
     def kx(self) -> Quantity:
@@ -188,7 +193,8 @@ def permeability_from_conductivity(
 
     References
     ----------
-    .. [1] R. A. Freeze and J. A. Cherry, "Groundwater", Prentice-Hall (1979), eq. 2.28.
+    .. [1] R. A. Freeze and J. A. Cherry, "Groundwater", Prentice-Hall (1979), eq. 2.28 (from
+       memory of the source).
 
     Examples
     --------

@@ -142,7 +142,18 @@ class WellState:
         return -1.0 if self.role == "producer" else 1.0
 
     def backflow_words(self) -> str:
-        """Say in one sentence what flows against the role; empty where nothing does."""
+        """Say in one sentence what flows against the role; empty where nothing does.
+
+        Examples
+        --------
+        >>> from wellindex import Liquid, Path, Permeability, TensorGrid, Well, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> path = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(path, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> well = Well(rows, Liquid(viscosity="2 cP", formation_volume_factor=1.25))
+        >>> well.at_pressure("150 bar", block_pressure="200 bar").backflow_words()
+        ''
+        """
         backflow = self.backflow
         if not np.any(backflow):
             return ""
@@ -178,7 +189,21 @@ class WellState:
         ]
 
     def summary(self) -> str:
-        """Return the well's values in a few lines, both rates with their names."""
+        """Return the well's values in a few lines, both rates with their names.
+
+        Examples
+        --------
+        >>> from wellindex import Liquid, Path, Permeability, TensorGrid, Well, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> path = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(path, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> well = Well(rows, Liquid(viscosity="2 cP", formation_volume_factor=1.25))
+        >>> print(well.at_rate("100 sm3/day", block_pressure="200 bar").summary())
+        producer
+          bottom-hole pressure  172.569 bar at 5 m depth
+          surface rate          100 sm3/day
+          reservoir rate        125 rm3/day
+        """
         if self._flow.rates.ndim != 1:
             return f"{self.role} in {self._total.size} states of shape {self._total.shape}"
         lines = [

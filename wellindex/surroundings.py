@@ -15,16 +15,21 @@ _EQUAL = 1.05
 
 
 def surroundings(
-    cells: Array, grid: TensorGrid, directions: list[str], placement: str
+    midpoints: Array, cells: Array, grid: TensorGrid, directions: list[str], placement: str
 ) -> list[str]:
     """Return one note per block that a well crosses; empty where all is as assumed."""
+    named = [side for name in AXES for side in SIDES[name] if placement in (side, "corner")]
+    closed = {side: ~off_side(midpoints, cells, grid, side) for side in named}
     return [
-        "; ".join(_of_block(tuple(cell), grid, direction, placement))
-        for cell, direction in zip(cells.tolist(), directions, strict=True)
+        "; ".join(_of_block(tuple(cell), grid, direction, {s for s in named if closed[s][row]}))
+        for row, (cell, direction) in enumerate(zip(cells.tolist(), directions, strict=True))
     ]
 
 
-def _of_block(cell: tuple[int, ...], grid: TensorGrid, direction: str, placement: str) -> list[str]:
+def _of_block(
+    cell: tuple[int, ...], grid: TensorGrid, direction: str, closed: set[str]
+) -> list[str]:
+    """Say what is not as assumed around one block, but for the sides that nothing crosses."""
     ends: list[str] = []
     uneven: list[str] = []
     for axis, name in enumerate(AXES):
@@ -33,11 +38,12 @@ def _of_block(cell: tuple[int, ...], grid: TensorGrid, direction: str, placement
         own = grid.widths(axis)[cell[axis]]
         worst = 1.0
         for side, step in zip(SIDES[name], (-1, 1), strict=True):
+            if side in closed:
+                continue
             beside = [*cell]
             beside[axis] += step
             if not grid.has(tuple(beside)):
-                if placement not in (side, "corner"):
-                    ends.append(side)
+                ends.append(side)
                 continue
             ratio = grid.widths(axis)[beside[axis]] / own
             worst = max(worst, ratio, 1.0 / ratio)

@@ -58,9 +58,16 @@ class Well:
 
     Notes
     -----
+    The wellbore is frictionless and filled with one fluid, of the rock fluid's density and
+    viscosity: a cold injector in hot rock, or a long horizontal well, may be far from that.
+
     Screening calculations: not for well control, nor a substitute for licensed engineering and
     local regulation. Injection above the fracture pressure can breach the seal; excessive
     drawdown can produce sand, cone water or gas, or collapse casing.
+
+    References
+    ----------
+    .. [1] D. W. Peaceman, SPE Journal 18(3), 183-194 (1978); doi:10.2118/6893-PA.
 
     Examples
     --------
@@ -175,6 +182,16 @@ class Well:
         -----
         BackflowWarning
             A coupling, or the whole well, flows against its role.
+
+        Examples
+        --------
+        >>> from wellindex import Liquid, Path, Permeability, TensorGrid, Well, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> path = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(path, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> well = Well(rows, Liquid(viscosity="2 cP", formation_volume_factor=1.25))
+        >>> print(f"{well.at_pressure('150 bar', block_pressure='200 bar').rate:.1f}")
+        182.3 sm3/day
         """
         blocks = self._at_couplings(block_pressure)
         pwf = self._in_batch("pwf", pwf, blocks)
@@ -215,6 +232,17 @@ class Well:
         -----
         BackflowWarning
             A coupling flows against the well's role.
+
+        Examples
+        --------
+        >>> from wellindex import Liquid, Path, Permeability, TensorGrid, Well, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> path = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(path, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> well = Well(rows, Liquid(viscosity="2 cP", formation_volume_factor=1.25))
+        >>> state = well.at_rate("100 sm3/day", block_pressure="200 bar")
+        >>> print(f"{state.pwf:.2f}, {state.reservoir_rate:.1f}")
+        172.57 bar, 125.0 rm3/day
         """
         surface = rate.kind is kinds.SURFACE_RATE
         given = rate.value * self._liquid.volume_factor if surface else rate.value
@@ -278,7 +306,10 @@ class Well:
         rates = self._transmissivity * drawdown
         # A rate that was given is the total; a sum that is rounding only is none.
         total = np.sum(rates, axis=-1)
-        rounding = np.abs(total) <= _SAME_PRESSURE * np.sum(np.abs(rates), axis=-1)
+        pressures = np.abs(blocks) + np.abs(wellbore)
+        rounding = np.abs(total) <= _SAME_PRESSURE * np.sum(
+            self._transmissivity * pressures, axis=-1
+        )
         total = np.where(rounding, 0.0, total) if rate is None else np.where(below, np.nan, rate)
         flow = Flow(pwf, centres, wellbore, drawdown, rates, total)
         state = WellState(flow, self.couplings, self._basis)

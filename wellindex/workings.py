@@ -46,22 +46,33 @@ class Step(NamedTuple):
 class Workings:
     """Steps of the calculation of some couplings; ``print`` shows them.
 
-    Attributes
-    ----------
-    steps : dict of int to list of Step
-        The steps of each coupling, by its row.
+    `workings` makes it.
+
+    Examples
+    --------
+    >>> from wellindex import Path, Permeability, TensorGrid, couple, workings
+    >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+    >>> path = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+    >>> shown = workings(couple(path, grid, Permeability("9 mD", "9 mD", "1 mD"), rw="0.1 m"))
+    >>> [step.title for step in shown.steps[0]][1:]
+    ['Permeability across the well', 'Flow resistance', 'Well index']
     """
 
     def __init__(self, titles: dict[int, str], steps: dict[int, list[Step]]) -> None:
         self._titles = titles
-        self.steps = steps
+        self._steps = steps
+
+    @property
+    def steps(self) -> dict[int, list[Step]]:
+        """The steps of each coupling, by its row; each has title, formula, numbers and result."""
+        return {row: list(steps) for row, steps in self._steps.items()}
 
     def __repr__(self) -> str:
-        return f"Workings(of {len(self.steps)} couplings; print it to read them)"
+        return f"Workings(of {len(self._steps)} couplings; print it to read them)"
 
     def __str__(self) -> str:
         parts = []
-        for row, steps in self.steps.items():
+        for row, steps in self._steps.items():
             lines = [self._titles[row], "=" * len(self._titles[row])]
             lines += [f"{n}. {step.text()}" for n, step in enumerate(steps, start=1)]
             parts.append("\n".join(lines))
@@ -97,8 +108,8 @@ def workings(
 
     References
     ----------
-    .. [1] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eqs. 14 and 16;
-       doi:10.2118/10528-PA.
+    .. [1] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eqs. 14 and 16 (from memory
+       of the source); doi:10.2118/10528-PA.
 
     Examples
     --------

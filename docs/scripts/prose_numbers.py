@@ -70,7 +70,6 @@ def values() -> dict[str, str]:
         "index shift at 100": f"{100 * abs(shift[100]):.3f} %",
         "index shift at 1000": f"{100 * abs(shift[1000]):.3f} %",
         "square r0": f"{square:.4f}",
-        "mean radius": f"{_tabulated('pure_constants', 'average-pressure-radius'):.4f}",
         "neighbour estimate": f"{math.exp(-math.pi / 2):.4f}",
         "side r0": f"{_radius('west'):.4f}",
         "corner r0": f"{_radius('corner'):.4f}",

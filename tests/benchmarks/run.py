@@ -22,8 +22,9 @@ from typing import Any, NamedTuple
 import numpy as np
 import pint
 
+from tests.benchmarks import hexahedra
 from tests.benchmarks.formulas import bare_numpy, by_hand, plain_pint
-from wellindex import equivalent_radius, ureg, well_index
+from wellindex import HexahedralGrid, cross, equivalent_radius, ureg, well_index
 
 BLOCK = {
     "dx": (150.0, "ft"),
@@ -185,6 +186,64 @@ def a_million() -> list[Line]:
     ]
 
 
+def _index_of(n: int) -> tuple[Any, float, float]:
+    """Return a grid of n**3 hexahedra, the time of its index and the peak memory of both."""
+    given = ureg.Quantity(hexahedra.corners(n), "m")
+    tracemalloc.start()
+    grid = HexahedralGrid(given)
+    grid.tree()
+    peak = tracemalloc.get_traced_memory()[1] / given.magnitude.nbytes
+    tracemalloc.stop()
+    del given
+    seconds = float("inf")
+    for _ in range(3):
+        grid._tree = None
+        start = time.process_time()
+        grid.tree()
+        seconds = min(seconds, time.process_time() - start)
+    return grid, seconds, peak
+
+
+def through_hexahedra() -> list[Line]:
+    """The same path through 1e6 and 8e6 cells of one box; needs 4 GB of memory."""
+    small, small_index, peak = _index_of(100)
+    large, large_index, _ = _index_of(200)
+    path = hexahedra.straight_well()
+    one, eight = in_turn(
+        [lambda: cross(path, small), lambda: cross(path, large)], 3, time.process_time
+    )
+    rows = f"{len(cross(path, small))} and {len(cross(path, large))} rows"
+    ms = f"{eight * 1e3:.1f} ms / {one * 1e3:.1f} ms, {rows}"
+    built = f"{large_index:.2f} s / {small_index:.2f} s"
+    return [
+        Line("same path, 8e6 over 1e6 hexahedra", eight / one, 2.5, False, ms),
+        Line("index of 8e6 over 1e6 hexahedra", large_index / small_index, 10, False, built),
+        Line("grid and index: peak memory over the corners given", peak, 3, False, "1e6 cells"),
+    ]
+
+
+def many_wells() -> list[Line]:
+    """1,000 wells of 200 stations: ten of them, against one leg's loop over a part of the cells."""
+    wells, measured, cells = 1000, 10, 20_000
+    grid = hexahedra.grid(100)
+    paths = [hexahedra.deviated_well(seed) for seed in range(measured)]
+    some = hexahedra.boxes(hexahedra.corners(100).reshape(-1, 8, 3)[:cells])
+    start, stop = paths[0].points[100:102].m_as("m").tolist()
+    ours, loop = in_turn(
+        [
+            lambda: [cross(path, grid) for path in paths],
+            lambda: hexahedra.plain_loop(start, stop, some),
+        ],
+        1,
+        time.process_time,
+    )
+    ours *= wells / measured
+    loop *= 1e6 / cells * wells * 199
+    detail = f"{loop / 3600:.0f} h / {ours:.0f} s, from {measured} wells and {cells} cells"
+    what = "1,000 wells, 200 stations, 1e6 hexahedra: plain loop over ours"
+    return [Line(what, loop / ours, 50, True, detail)]
+
+
 def importing() -> list[Line]:
     """Import time against numpy and pint alone, in fresh processes."""
 
@@ -224,7 +283,15 @@ def main() -> None:
     parser.add_argument("--write", type=Path, help="also write the table as Markdown")
     options = parser.parse_args()
     assert equivalent_radius.si(dx=1.0, dy=1.0, kx=1.0, ky=1.0) > 0.0
-    lines = [*scalars(), *fresh_units(), *short_arrays(), *a_million(), *importing()]
+    lines = [
+        *scalars(),
+        *fresh_units(),
+        *short_arrays(),
+        *a_million(),
+        *through_hexahedra(),
+        *many_wells(),
+        *importing(),
+    ]
     versions = (
         f"Python {platform.python_version()}, numpy {np.__version__}, pint {pint.__version__}"
     )

@@ -71,8 +71,9 @@ def test_one_error_lists_every_bad_argument() -> None:
     assert message(ArgumentsError, lambda: well_index(**bad)) == [
         "well_index(): 5 arguments are wrong",
         "  dx: needs a length; got 100.0; give a quantity or text with its unit, such as '... m'",
-        "  kx: needs a permeability; got '50 ft'; use a unit such as mD",
-        "  ky: needs a permeability, zero or positive, and finite; got -9.86923e-13 meter**2",
+        "  kx: needs a permeability; got '50 ft'; use a unit such as mD; "
+        "permeability_from_conductivity turns a hydraulic conductivity into one",
+        "  ky: needs a permeability, zero or positive, and finite; got '-1 D'",
         "  direction: needs one of 'x', 'y', 'z'; got 'up'; use one of these",
         "  skin: needs a skin (a plain number); got True; a boolean is no quantity",
     ]
@@ -86,7 +87,8 @@ def test_a_bad_element_and_a_bad_unit_in_one_error(size: int) -> None:
     assert message(ArgumentsError, lambda: well_index(**bad)) == [
         "well_index(): 2 arguments are wrong",
         f"  dx: needs a length, positive and finite; got -1 meter at [{size - 2}]",
-        "  kx: needs a permeability; got '50 ft'; use a unit such as mD",
+        "  kx: needs a permeability; got '50 ft'; use a unit such as mD; "
+        "permeability_from_conductivity turns a hydraulic conductivity into one",
     ]
 
 
@@ -600,3 +602,71 @@ def test_an_answer_without_annotation_breaks_the_import() -> None:
 def test_a_formula_keeps_its_name_and_docstring() -> None:
     assert equivalent_radius.__name__ == "equivalent_radius"
     assert "Peaceman" in str(equivalent_radius.__doc__)
+
+
+@pytest.mark.parametrize(
+    ("changed", "hint"),
+    [
+        ({"direction": "up"}, "use one of these"),
+        ({"placement": "nort"}, "did you mean 'north'?"),
+        ({"placement": "center"}, "did you mean 'centre'?"),
+        ({"invalid": "nam"}, "did you mean 'nan'?"),
+        ({"placement": 3}, "use one of these"),
+        ({"placement": None}, "use one of these"),
+    ],
+)
+def test_a_choice_that_is_nearly_one(changed: dict[str, Any], hint: str) -> None:
+    ((name, value),) = changed.items()
+    (line,) = message(DomainError, lambda: well_index(**block(**changed)))[1:]
+    assert line.startswith(f"  {name}: needs one of '")
+    assert line.endswith(f"; got {value!r}; {hint}")
+
+
+def nested(depth: int) -> Any:
+    value: Any = "5 m"
+    for _level in range(depth):
+        value = [value]
+    return value
+
+
+def test_lists_in_lists() -> None:
+    answer = sample.length(d=nested(5))
+    assert answer.magnitude.shape == (1,) * 5
+    for depth in (6, 7, 500):
+        with pytest.raises(ShapeError, match="got lists in lists in lists; give an array"):
+            sample.length(d=nested(depth))
+
+
+@pytest.mark.parametrize(
+    ("value", "echo"),
+    [
+        ("-3 ft", "'-3 ft'"),
+        (ureg.Quantity(-3, "ft"), "'-3 ft'"),
+        (ureg.Quantity(-3.5, "km"), "'-3.5 km'"),
+        (THEIRS.Quantity(-3, "foot"), "'-3 foot'"),
+        (["1 m", "-3 ft"], "-0.9144 meter at [1]"),
+        (ureg.Quantity(np.array([1.0, -3.0]), "ft"), "-0.9144 meter at [1]"),
+    ],
+)
+def test_a_range_error_says_what_was_given(value: Any, echo: str) -> None:
+    with pytest.raises(DomainError, match=re.escape(f"positive and finite; got {echo}") + "$"):
+        sample.length(d=value)
+
+
+@pytest.mark.parametrize(
+    "angle", ["30 degree", "0.5 rad", ureg.Quantity(30.0, "degree"), THEIRS.Quantity(1.0, "degree")]
+)
+def test_an_angle_is_no_plain_number(angle: Any) -> None:
+    with pytest.raises(UnitsError, match="an angle is not what is meant here"):
+        well_index(**block(skin=angle))
+
+
+@pytest.mark.parametrize("name", ["wellindex_tools", "wellindexes.core", "my.wellindex", "app"])
+def test_a_warning_points_at_the_caller_whatever_its_name(name: str) -> None:
+    filename = f"/elsewhere/{name}.py"
+    source = "\n\nanswer = call(**given)\n"
+    names = {"__name__": name, "call": well_index, "given": block(rw="10 m")}
+    with warnings.catch_warnings(record=True) as caught:
+        warnings.simplefilter("always")
+        exec(compile(source, filename, "exec"), names)
+    assert [(w.filename, w.lineno) for w in caught] == [(filename, 3)]

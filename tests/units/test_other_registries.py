@@ -120,3 +120,42 @@ def test_too_late_is_said() -> None:
 def test_only_a_registry(thing: Any) -> None:
     with pytest.raises(UnitsError, match=r"define_units needs a pint\.UnitRegistry, not "):
         define_units(thing)
+
+
+PLAIN_VOLUMES = {
+    "stb": "stb = 0.158987294928 * metre ** 3",
+    "scf": "scf = 0.028316846592 * metre ** 3",
+    "Mscf": "Mscf = 28.316846592 * metre ** 3",
+    "sm3": "sm3 = metre ** 3",
+}
+
+
+@pytest.mark.parametrize("name", PLAIN_VOLUMES)
+def test_a_surface_volume_that_is_a_plain_one_there(name: str) -> None:
+    registry = pint.UnitRegistry()
+    registry.define(PLAIN_VOLUMES[name])
+    rate = registry.Quantity(5.0, f"{name}/day")
+    words = re.escape(f"that registry makes {name!r} a volume at reservoir conditions")
+    for _again in range(2):
+        with pytest.raises(UnitsError, match=f"{words}.*call wellindex.define_units"):
+            sample.rate(q=rate)
+    with pytest.raises(UnitsError, match=name):
+        define_units(registry)
+
+
+@pytest.mark.parametrize("name", PLAIN_VOLUMES)
+def test_a_registry_that_is_refused_is_left_as_it_was(name: str) -> None:
+    registry = pint.UnitRegistry()
+    registry.define(PLAIN_VOLUMES[name])
+    before = set(registry)
+    with pytest.raises(UnitsError, match=f"this registry gives {name} another value"):
+        define_units(registry)
+    assert set(registry) == before
+    with pytest.raises(pint.UndefinedUnitError):
+        registry.Quantity(1.0, "psig")
+
+
+def test_foreign_barrels_by_their_short_name() -> None:
+    registry = pint.UnitRegistry()
+    with pytest.raises(UnitsError, match=r"holds 0\.11924 m3; the trade's holds 42 gallons"):
+        sample.rate(q=registry.Quantity(1.0, "bbl/day"))

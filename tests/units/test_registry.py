@@ -61,7 +61,6 @@ def test_a_unit_has_its_legal_definition(unit: str) -> None:
 @pytest.mark.parametrize(
     ("one", "same"),
     [
-        ("bbl", "42 gallon"),
         ("rb", "42 gallon"),
         ("Mscf", "1000 scf"),
         ("MMscf", "1e6 scf"),
@@ -103,9 +102,15 @@ def test_a_surface_foot_is_a_foot() -> None:
 def test_the_foreign_barrel_is_another_one() -> None:
     theirs = pint.UnitRegistry()
     assert theirs.Quantity(1, "bbl").m_as("gallon") == close(31.5, rel=1e-12)
-    assert ureg.Quantity(1, "bbl").m_as("gallon") == close(42, rel=1e-12)
-    with pytest.raises(UnitsError, match=r"'barrel': write rb \(reservoir barrel\) or stb"):
-        ureg.Quantity(1, "barrel")
+    assert ureg.Quantity(1, "rb").m_as("gallon") == close(42, rel=1e-12)
+    remedy = r"write rb \(reservoir barrel\) or stb \(stock-tank barrel\)"
+    for name in ("bbl", "bbls", "barrel", "barrels"):
+        for text in (name, f"{name}/day", f"cP*{name}/day/psi"):
+            with pytest.raises(UnitsError, match=f"'{name}': {remedy}"):
+                ureg.Quantity(1, text)
+        with pytest.raises(UnitsError, match=f"'{name}': {remedy}"):
+            ureg.Quantity(f"5 {name}")
+        assert not hasattr(ureg, name)
 
 
 @pytest.mark.parametrize(
@@ -188,7 +193,7 @@ def test_a_unit_of_your_own() -> None:
 
 def test_the_public_class_makes_our_quantities() -> None:
     assert isinstance(ureg.Quantity(1, "m"), Quantity)
-    barrel = Quantity(1, "bbl")
+    barrel = Quantity(1, "rb")
     assert type(barrel) is ureg.Quantity
     assert barrel.m_as("gallon") == close(42, rel=1e-12)
 
@@ -268,7 +273,7 @@ def test_quantities_cross_processes(method: str) -> None:
 
 
 def test_pint_s_own_registry_is_left_alone() -> None:
-    pickle.loads(pickle.dumps(ureg.Quantity(1, "bbl")))
+    pickle.loads(pickle.dumps(ureg.Quantity(1, "rb")))
     assert pint.get_application_registry() is not ureg
     assert pint.application_registry.get() is not ureg
     assert pint.Quantity(1, "barrel").m_as("gallon") == close(31.5, rel=1e-12)
@@ -285,3 +290,10 @@ def test_threads_share_the_registry() -> None:
 
 def test_no_unit_at_all_is_the_unit_of_a_ratio() -> None:
     assert (ureg.Quantity(3.0, "km") / ureg.Quantity(1500.0, "m")).to("").magnitude == 2.0
+    for make in (ureg.Quantity, Quantity):
+        plain = make(2.5, "")
+        assert type(plain) is ureg.Quantity
+        assert plain.magnitude == 2.5
+        assert plain.dimensionless
+    with pytest.raises(pint.DimensionalityError):
+        make(2.5, "").to("m")

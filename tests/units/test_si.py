@@ -1,6 +1,8 @@
 """``.si``: the same formula on plain SI floats and arrays, with the same signature and checks."""
 
 import inspect
+import math
+import pickle
 import re
 from decimal import Decimal
 from typing import Any
@@ -33,6 +35,7 @@ FORMULAS = {
 } | {name: f for name, f in vars(sample).items() if hasattr(f, "si")}
 UNITS = {"dx": "m", "dy": "m", "dz": "m", "kx": "m**2", "ky": "m**2", "kz": "m**2", "rw": "m"}
 UNITS |= {"length": "m", "equivalent_radius": "m"}
+LENGTH = "a length, positive and finite; got "
 
 
 def block(**changed: Any) -> dict[str, Any]:
@@ -139,15 +142,34 @@ def test_inputs_stay_as_they_are() -> None:
 
 
 @pytest.mark.parametrize(
+    ("changed", "words", "echo", "si_echo"),
+    [
+        ({"dx": 0.0}, "dx: needs " + LENGTH, "'0.0 m'", "0 meter"),
+        ({"dx": -1}, "dx: needs " + LENGTH, "'-1 m'", "-1 meter"),
+        (
+            {"kx": -1e-15},
+            "kx: needs a permeability, zero or positive, and finite; got ",
+            "'-1e-15 m**2'",
+            "-1e-15 meter**2",
+        ),
+        ({"rw": math.nan}, "rw: needs " + LENGTH, "'nan m'", "nan meter"),
+        ({"dz": math.inf}, "dz: needs " + LENGTH, "'inf m'", "inf meter"),
+        ({"length": 0.0}, "length: needs " + LENGTH, "'0.0 m'", "0 meter"),
+    ],
+)
+def test_the_same_ranges_echo_what_was_given(
+    changed: dict[str, Any], words: str, echo: str, si_echo: str
+) -> None:
+    with pytest.raises(DomainError, match=re.escape(words + si_echo) + "$"):
+        well_index.si(**block(**changed))
+    with pytest.raises(DomainError, match=re.escape(words + echo) + "$"):
+        well_index(**with_units(block(**changed)))
+
+
+@pytest.mark.parametrize(
     ("changed", "words"),
     [
-        ({"dx": 0.0}, "dx: needs a length, positive and finite; got 0 meter"),
-        ({"dx": -1}, "dx: needs a length, positive and finite; got -1 meter"),
-        ({"kx": -1e-15}, "kx: needs a permeability, zero or positive, and finite; got -1e-15 met"),
-        ({"rw": float("nan")}, "rw: needs a length, positive and finite; got nan meter"),
-        ({"dz": float("inf")}, "dz: needs a length, positive and finite; got inf meter"),
-        ({"skin": float("-inf")}, "skin: needs a skin (a plain number), finite; got -inf"),
-        ({"length": 0.0}, "length: needs a length, positive and finite; got 0 meter"),
+        ({"skin": -math.inf}, "skin: needs a skin (a plain number), finite; got -inf"),
         ({"sector": 1.5, "equivalent_radius": 9.0}, "sector: needs the fraction of a full circle"),
         ({"dx": np.array([1e2, -1.0])}, "dx: needs a length, positive and finite; got -1 meter at"),
         ({"direction": "up"}, "direction: needs one of 'x', 'y', 'z'; got 'up'"),
@@ -210,7 +232,27 @@ def test_the_same_warning() -> None:
 
 
 def test_one_bad_element_can_be_marked() -> None:
-    with pytest.warns(AssumptionWarning, match="1 elements are not a number: 1 x dx must be"):
+    with pytest.warns(AssumptionWarning, match="1 element is not a number: 1 x dx must be"):
         marked = well_index.si(**block(dx=np.array([100.0, -1.0])), invalid="nan")
     assert marked[0] == well_index.si(**block(dx=100.0))
     assert np.isnan(marked[1])
+
+
+def test_marked_elements_are_counted() -> None:
+    with pytest.warns(AssumptionWarning, match="2 elements are not a number: 2 x dx must be"):
+        marked = well_index.si(**block(dx=np.array([-1.0, 100.0, np.nan])), invalid="nan")
+    assert np.isnan(marked).tolist() == [True, False, True]
+
+
+def test_a_bad_scalar_is_refused_with_either() -> None:
+    with pytest.raises(DomainError, match="dx: needs a length, positive and finite; got -1 meter"):
+        well_index.si(**block(dx=-1.0), invalid="nan")
+    with pytest.raises(DomainError, match="invalid: needs one of 'raise', 'nan'; got 'skip'"):
+        well_index.si(**block(), invalid="skip")
+    assert well_index.si(**block(), invalid="nan") == well_index.si(**block())
+
+
+@pytest.mark.parametrize("formula", FORMULAS.values(), ids=FORMULAS.keys())
+def test_it_can_be_pickled(formula: Any) -> None:
+    for protocol in range(pickle.HIGHEST_PROTOCOL + 1):
+        assert pickle.loads(pickle.dumps(formula.si, protocol)) is formula.si

@@ -250,10 +250,18 @@ def test_the_site_s_air_pressure(site: Any, pascal: float) -> None:
     with unit_system("si", site_pressure=site):
         assert sample.pressure(p="0 psig").magnitude == close(pascal)
         with unit_system("si"):
-            assert sample.pressure(p="0 psig").magnitude == close(101_325.0)
+            assert sample.pressure(p="0 psig").magnitude == close(pascal)
+            with unit_system("metric", site_pressure="0.7 bar"):
+                assert sample.pressure(p="0 psig").m_as("bar") == close(0.7)
+            assert sample.pressure(p="0 psig").magnitude == close(pascal)
         assert sample.pressure(p="0 barg").magnitude == close(pascal)
+    assert sample.pressure(p="0 barg").m_as("Pa") == close(101_325.0)
     set_unit_system("si", site_pressure=site)
     assert sample.pressure(p="0 barg").magnitude == close(pascal)
+    with unit_system("oilfield"):
+        assert sample.pressure(p="0 barg").m_as("Pa") == close(pascal)
+    set_unit_system("si")
+    assert sample.pressure(p="0 barg").magnitude == close(101_325.0)
 
 
 def test_the_site_s_air_counts_in_a_registry_that_was_taught_ours() -> None:

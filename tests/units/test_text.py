@@ -13,7 +13,7 @@ from wellindex import UnitsError, equivalent_radius, ureg
 from wellindex.units.registry import read_text
 from wellindex.units.text import guard
 
-AT_ONCE = 0.25  # seconds of processor: far above the guard's need, far below a hang
+AT_ONCE = 1.0  # seconds of processor: far above the guard's need, far below a hang
 
 HOSTILE = {
     "power tower": "9**9**9**9 m",

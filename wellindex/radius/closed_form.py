@@ -127,7 +127,7 @@ def equivalent_radius(
     ----------
     .. [1] D. W. Peaceman, "Interpretation of Well-Block Pressures in Numerical Reservoir
        Simulation With Nonsquare Grid Blocks and Anisotropic Permeability", SPE Journal 23(3),
-       531-543 (1983), eq. 14; doi:10.2118/10528-PA.
+       531-543 (1983), eq. 14 (from memory of the source); doi:10.2118/10528-PA.
 
     Examples
     --------
@@ -178,7 +178,8 @@ def equivalent_wellbore_radius(
 
     References
     ----------
-    .. [1] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eq. 18; doi:10.2118/10528-PA.
+    .. [1] D. W. Peaceman, SPE Journal 23(3), 531-543 (1983), eq. 18 (from memory of the
+       source); doi:10.2118/10528-PA.
 
     Examples
     --------

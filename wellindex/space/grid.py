@@ -78,7 +78,7 @@ class TensorGrid:
                 raise ShapeError(f"TensorGrid(): d{axis} is one row of sizes; got {size.shape}")
         if np.shape(origin) != (3,):
             raise ShapeError("TensorGrid(): origin is one point (x, y, z)")
-        self.shape = (len(sizes[0]), len(sizes[1]), len(sizes[2]))
+        self._shape = (len(sizes[0]), len(sizes[1]), len(sizes[2]))
         self._sizes = tuple(frozen(size) for size in sizes)
         self._edges = tuple(
             frozen(start + np.concatenate(([0.0], np.cumsum(size))))
@@ -100,6 +100,11 @@ class TensorGrid:
             )
         copy: np.ndarray[Any, Any] = frozen(mask)
         return copy
+
+    @property
+    def shape(self) -> tuple[int, int, int]:
+        """Number of blocks along x, y and z, (nx, ny, nz)."""
+        return self._shape
 
     @property
     def dx(self) -> Quantity:
@@ -140,6 +145,13 @@ class TensorGrid:
             A cell that is not three whole numbers.
         DomainError
             The grid has no such block.
+
+        Examples
+        --------
+        >>> from wellindex import TensorGrid
+        >>> grid = TensorGrid(["100 m"] * 3, ["80 m"] * 3, "10 m", origin=("0 m", "0 m", "900 m"))
+        >>> print(f"{grid.centre((1, 0, 0)):.0f}")
+        [150 40 905] m
         """
         return as_quantity(kinds.COORDINATE, self.centres(one_cell(cell, self.shape))[0])
 
