@@ -20,6 +20,7 @@ from tests.published import tables
 from tests.published.tables import Check
 from wellindex import (
     Quantity,
+    Survey,
     equivalent_radius,
     permeability_from_conductivity,
     productivity_index,
@@ -42,6 +43,7 @@ _HEADINGS = {
     "groundwater": "Groundwater",
     "productivity": "Productivity of wells in textbooks",
     "pure_constants": "Pure constants",
+    "survey": "Surveys",
     "trade_constants": "Constants of the trade",
     "unit_constants": "Units",
 }
@@ -139,6 +141,31 @@ def _skin(check: Check) -> Quantity:
     return (ideal - 1) * (math.log(ratio) - 0.75)
 
 
+def _leg(check: Check) -> Quantity:
+    """Return a number of one leg by minimum curvature."""
+    given, what = check.inputs, str(check.inputs["what"])
+    columns = ("measured_depth", "inclination", "azimuth")
+    survey = Survey(*([given[f"{name}_{end}"] for end in (1, 2)] for name in columns))
+    if what == "dogleg":
+        return survey.dogleg[0]
+    if what == "ratio":
+        half = float(survey.dogleg[0].m_as("radian")) / 2.0
+        return _quantity(math.tan(half) / half)
+    return survey.points[-1][("east", "north", "down").index(what)]
+
+
+def _test_hole(check: Check) -> Quantity:
+    """Return where the test hole of equal turns ends."""
+    legs = int(check.inputs["legs"])
+    parts = [n / legs for n in range(legs + 1)]
+    depth, angle = (
+        ureg.Quantity([part * _quantity(check.inputs[name]).magnitude for part in parts], unit)
+        for name, unit in (("length", "ft"), ("inclination", "degree"))
+    )
+    survey = Survey(depth, angle, ureg.Quantity([0.0] * (legs + 1), "degree"))
+    return survey.points[-1][("east", "north", "down").index(str(check.inputs["what"]))]
+
+
 def _constant(check: Check) -> Quantity:
     value = check.factor_value
     for term in check.terms:
@@ -182,6 +209,8 @@ _BY_QUANTITY: dict[str, tuple[str, Callable[[Check], Quantity]]] = {
         _UNITS,
         lambda check: (_quantity(check.inputs["area"]) / math.pi) ** 0.5,
     ),
+    "minimum_curvature": (_LIBRARY, _leg),
+    "test_hole": (_LIBRARY, _test_hole),
     "unit": (_UNITS, _constant),
     "trade constant": (_UNITS, _constant),
 }
