@@ -228,7 +228,7 @@ def test_bad_numbers() -> None:
         code.number("1 mD*ft", viscosity="0 cP")
     with pytest.raises(UnitsError, match="wi: needs a well index"):
         code.number(1.0, viscosity="1 cP")
-    with pytest.raises(UnitsError, match=r"number: needs a factor \(a plain number\)"):
+    with pytest.raises(UnitsError, match=r"number: needs a plain number"):
         code.well_index("1 mD*ft", viscosity="1 cP")
     with pytest.raises(UnitsError, match="to is a Convention, not str"):
         code.convert(1.0, "mD*ft")

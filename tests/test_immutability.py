@@ -174,7 +174,7 @@ def test_a_change_would_be_noticed() -> None:
 def test_workings_say_the_same_after_their_couplings_were_handled() -> None:
     rows = layered_couplings()
     before = str(workings(rows))
-    spoil(rows.plane)
+    spoil(rows.crossed)
     spoil(rows.rows_in_si())
     spoil(rows.in_si())
     assert str(workings(rows)) == before

@@ -318,7 +318,10 @@ class Convention:
         unsigned = self.sign * number
         if np.any(unsigned < 0.0):
             sign = "positive" if self.sign > 0 else "negative"
-            raise DomainError(f"Convention(): a number in this convention is zero or {sign}")
+            raise DomainError(
+                "Convention(): 1 argument is wrong\n"
+                f"  number: needs a well index, in this convention zero or {sign}"
+            )
         return unsigned
 
     def per_index(self, data: dict[str, Any], length: float) -> float:

@@ -324,7 +324,17 @@ class Couplings:
         Table(self.columns()).to_json(path)
 
     def to_array(self) -> Array:
-        """Return the table as a numpy structured array, in the unit system in force."""
+        """Return the table as a numpy structured array, in the unit system in force.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> print(f"{rows.to_array()['length'][0]:.1f}")
+        10.0
+        """
         columns = self.columns()
         kinds_of = {"i": "i8", "j": "i8", "k": "i8", "note": "U200"}
         array = np.empty(len(self), dtype=[(c.name, kinds_of.get(c.name, "f8")) for c in columns])
@@ -339,6 +349,15 @@ class Couplings:
         ------
         ImportError
             pandas is not installed.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> rows.to_pandas().shape
+        (1, 16)
         """
         pandas = import_module("pandas")
         return pandas.DataFrame({header(column): column.values for column in self.columns()})
@@ -416,6 +435,15 @@ class Couplings:
         ------
         DomainError, ShapeError
             A negative factor; neither one factor nor one per row.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> print(f"{(rows.scaled(1.5).wi / rows.wi)[0].magnitude:.2f}")
+        1.50
         """
         scaled: Couplings = self._with(factor=factor)
         return scaled
@@ -432,6 +460,15 @@ class Couplings:
         ------
         DomainError, ShapeError
             ln(r0/rw) + skin not positive; neither one skin nor one per row.
+
+        Examples
+        --------
+        >>> from wellindex import Path, Permeability, TensorGrid, couple
+        >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, "10 m")
+        >>> well = Path([("150 m", "150 m", "0 m"), ("150 m", "150 m", "10 m")])
+        >>> rows = couple(well, grid, Permeability("90 mD", "90 mD", "9 mD"), rw="0.1 m")
+        >>> print(f"{rows.with_skin(2.0).wi[0]:.3f}")
+        6.614 cP*m**3/bar/day
         """
         changed: Couplings = self._with(skin=skin)
         return changed
