@@ -205,7 +205,8 @@ class Careful:
         tally: Tally,
     ) -> np.ndarray[Any, Any]:
         result = np.empty(shape)
-        blocks = np.nditer(  # type: ignore[call-overload]
+        iterate: Any = np.nditer  # its overloads differ between versions of numpy
+        blocks = iterate(
             [*arrays.values(), result],
             flags=["external_loop", "buffered", "zerosize_ok"],
             op_flags=[["readonly"]] * len(arrays) + [["writeonly"]],
