@@ -68,3 +68,30 @@ def test_the_first_measured_depth_is_one_length() -> None:
         Path(metres([[0, 0, 0], [0, 0, 1]]), measured_depth=5.0)
     with pytest.raises(ShapeError, match="measured_depth is one value"):
         Path(metres([[0, 0, 0], [0, 0, 1]]), measured_depth=metres([1.0, 2.0, 3.0]))
+
+
+def test_measured_depth_at_every_point_where_legs_stand_for_arcs() -> None:
+    places = [(0.0, 0.0, 0.0), (0.0, 0.0, 10.0), (3.0, 4.0, 10.0)]
+    path = Path(metres(places), measured_depth=metres([100.0, 110.0, 115.5]))
+    assert path.measured_depth.m_as("m").tolist() == [100.0, 110.0, 115.5]
+    assert path.length.m_as("m") == close(15.5, rel=1e-14)
+    # Along a leg the place goes with the part of its measured depth.
+    assert path.at(np.array([105.0, 112.75]))[:, 2].tolist() == [5.0, 10.0]
+    assert path.at(np.array([112.75]))[0] == pytest.approx([1.5, 2.0, 10.0], abs=1e-12)
+    texts = Path(metres(places), measured_depth=["100 m", "110 m", "120 m"])
+    assert texts.length.m_as("m") == close(20.0, rel=1e-14)
+
+
+@pytest.mark.parametrize(
+    ("depths", "error", "words"),
+    [
+        ([1.0, 2.0], ShapeError, r"or one per point \(3\); got \(2,\)"),
+        ([[1.0, 2.0, 3.0]], ShapeError, r"or one per point \(3\); got \(1, 3\)"),
+        ([1.0, 3.0, 2.0], DomainError, "must increase; points 1 and 2 do not"),
+        ([1.0, 1.0, 2.0], DomainError, "must increase; points 0 and 1 do not"),
+        ([1.0, np.nan, 2.0], DomainError, r"measured_depth: .*\[1\]"),
+    ],
+)
+def test_bad_measured_depths(depths: Any, error: type[Exception], words: str) -> None:
+    with pytest.raises(error, match=words):
+        Path(metres([[0, 0, 0], [0, 0, 1], [0, 0, 2]]), measured_depth=metres(depths))
