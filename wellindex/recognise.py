@@ -50,7 +50,16 @@ _UNIT_PAIRS = (
 
 
 class Match(NamedTuple):
-    """One reading of a number: what it contains, how it was made, and how near it comes."""
+    """One reading of a number: what it contains, how it was made, and how near it comes.
+
+    Examples
+    --------
+    >>> from wellindex import recognise
+    >>> found = recognise("495.3", dx="100 ft", dy="100 ft", dz="20 ft", kx="100 mD",
+    ...                   ky="100 mD", kz="10 mD", rw="0.35 ft")
+    >>> abs(found[0].difference) < 1e-3
+    True
+    """
 
     convention: Convention
     words: str
@@ -229,7 +238,15 @@ def recognise(
 
 
 class Comparison(NamedTuple):
-    """Two tables side by side: the ratio of each row, a common factor, its likely causes."""
+    """Two tables side by side: the ratio of each row, a common factor, its likely causes.
+
+    Examples
+    --------
+    >>> from wellindex import compare, ureg
+    >>> a, b = ureg.Quantity([2.0, 4.0], "m**3"), ureg.Quantity([1.0, 2.0], "m**3")
+    >>> compare(a, b).causes
+    ['half a circle']
+    """
 
     ratio: Array
     common_factor: float | None

@@ -58,6 +58,14 @@ class Crossings:
     overlaps : list of tuple
         Where cells overlap (faults), (measured depth from, to, the other cell): the length counts
         once, for the row's cell.
+
+    Examples
+    --------
+    >>> from wellindex import Path, TensorGrid, cross
+    >>> grid = TensorGrid(["100 m"] * 3, ["100 m"] * 3, ["5 m", "8 m"])
+    >>> found = cross(Path([("50 m", "50 m", "0 m"), ("50 m", "50 m", "10 m")]), grid)
+    >>> print(f"{found.length:.1f}")
+    [5.0 5.0] m
     """
 
     def __init__(

@@ -243,6 +243,15 @@ class HexahedralGrid:
             A cell that is not three whole numbers.
         DomainError
             The grid has no such cell.
+
+        Examples
+        --------
+        >>> import numpy as np
+        >>> from wellindex import HexahedralGrid, ureg
+        >>> unit = np.array([[c & 1, c >> 1 & 1, c >> 2 & 1] for c in range(8)], dtype=float)
+        >>> grid = HexahedralGrid(ureg.Quantity(unit.reshape(1, 1, 1, 8, 3) * 50.0, "m"))
+        >>> print(f"{grid.centre((0, 0, 0)):.1f}")
+        [25.0 25.0 25.0] m
         """
         return as_quantity(kinds.COORDINATE, self.centres(one_cell(cell, self.shape))[0])
 

@@ -192,6 +192,18 @@ class Survey:
             A column without its unit.
         DomainError
             A missing column, or a value that is no number; the row is named.
+
+        Examples
+        --------
+        >>> import os, tempfile
+        >>> from wellindex import Survey
+        >>> text = "measured_depth [ft],inclination [degree],azimuth [degree]\\n0,0,0\\n90,3,45\\n"
+        >>> with tempfile.TemporaryDirectory() as folder:
+        ...     path = os.path.join(folder, "survey.csv")
+        ...     with open(path, "w") as file:
+        ...         _ = file.write(text)
+        ...     Survey.from_csv(path)
+        Survey(2 stations)
         """
         with open(path, encoding="utf-8-sig", newline="") as file:
             return cls.from_lines(file, FilePath(path).name, **options)
@@ -260,6 +272,13 @@ class Survey:
         ------
         DomainError
             A measured depth outside the survey.
+
+        Examples
+        --------
+        >>> from wellindex import Survey
+        >>> survey = Survey(["0 m", "100 m"], ["0 degree", "0 degree"], ["0 degree", "0 degree"])
+        >>> print(f"{survey.position('50 m'):.1f}")
+        [0.0 0.0 50.0] m
         """
         return as_quantity(kinds.COORDINATE, self._at(measured_depth=measured_depth)[0])
 
@@ -279,6 +298,13 @@ class Survey:
         ------
         DomainError
             A measured depth outside the survey.
+
+        Examples
+        --------
+        >>> from wellindex import Survey
+        >>> survey = Survey(["0 m", "100 m"], ["0 degree", "0 degree"], ["0 degree", "0 degree"])
+        >>> survey.direction("50 m").tolist()
+        [0.0, 0.0, 1.0]
         """
         return self._at(measured_depth=measured_depth)[1]
 
