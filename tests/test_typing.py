@@ -16,7 +16,9 @@ MARK = re.compile(r"# E: ([a-z -]+)$")
 @pytest.fixture(scope="module")
 def found() -> dict[str, Counter[tuple[int, str]]]:
     """The errors that mypy --strict finds, by file, line and code."""
+    # Errors inside the package are another gate's business, with the newest stubs of numpy.
     options = ["--strict", "--config-file=", "--no-error-summary", "--hide-error-context"]
+    options.append("--follow-imports=silent")
     run = subprocess.run(
         [sys.executable, "-m", "mypy", *options, "must_pass.py", "must_fail.py"],
         cwd=SAMPLES,
