@@ -10,7 +10,7 @@ import wellindex
 from wellindex.__main__ import main
 
 BUNDLED: Final = Path(wellindex.__file__).parent / "case" / "five_layers.toml"
-STRAIGHT: Final = Path(__file__).with_name("straight.toml")
+STRAIGHT: Final = BUNDLED.with_name("vertical_well.toml")
 TEXT: Final = STRAIGHT.read_text(encoding="utf-8")
 
 
