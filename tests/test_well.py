@@ -474,3 +474,17 @@ def test_a_well_shut_by_its_pressure_has_no_rate(data: st.DataObject) -> None:
         < 1e-9 * abs(again.coupling_surface_rate).max().m_as("sm3/day") + 1e-9
     )
     assert not shut.well_backflow
+
+
+@pytest.mark.parametrize(("drawdown", "flows"), [(0.0, False), (1e-7, False), (1e-2, True)])
+def test_pressures_that_differ_by_rounding_only_are_the_same(drawdown: float, flows: bool) -> None:
+    # 16 roundings (2**-52) of both pressures, 2e7 Pa each, are 1.4e-7 Pa.
+    grid = blocks_of([100.0] * 3, [100.0] * 3, [10.0])
+    rows = couple(
+        route((150.0, 150.0, 0.0), (150.0, 150.0, 10.0)), grid, rock(1e-13, 1e-13, 1e-13),
+        rw="0.1 m",
+    )  # fmt: skip
+    well = Well(rows, Liquid(viscosity="1 cP", formation_volume_factor=1.0))
+    state = well.at_pressure(pascals(2e7 - drawdown), block_pressure=pascals(2e7))
+    assert bool(state.coupling_rate.magnitude[0] != 0.0) is flows
+    assert bool(state.rate.magnitude != 0.0) is flows
