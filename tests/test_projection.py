@@ -436,3 +436,20 @@ def test_the_oracle_knows_the_textbook_case() -> None:
             2 * math.pi * 1e-13 * 30.0 / math.log(radius / 0.1), rel=1e-12
         )
         assert float(found.r0) == close(radius, rel=1e-12)
+
+
+def test_an_oblique_well_needs_the_permeability_of_every_axis() -> None:
+    # kz is not across a vertical well, but it is across the horizontal part of an oblique one.
+    grid = blocks_of([50.0] * 3, [50.0] * 3, [10.0] * 2)
+    kz = np.full((3, 3, 2), 1e-14)
+    kz[1, 1, 1] = np.nan
+    with pytest.warns(AssumptionWarning, match="1 element is not a number"):
+        partly = rock(np.full((3, 3, 2), 1e-13), np.full((3, 3, 2), 1e-13), kz, invalid="nan")
+    upright = route((75.0, 75.0, 0.0), (75.0, 75.0, 20.0))
+    oblique = route((70.0, 70.0, 0.0), (80.0, 78.0, 20.0))
+    assert np.all(np.isfinite(couple(upright, grid, partly, rw="0.1 m").wi.magnitude))
+    with pytest.raises(DomainError, match="no valid permeability"):
+        couple(oblique, grid, partly, rw="0.1 m")
+    with pytest.warns(AssumptionWarning, match="no valid permeability"):
+        rows = couple(oblique, grid, partly, rw="0.1 m", invalid="nan")
+    assert np.isnan(rows.wi.magnitude).tolist() == [False, True]

@@ -22,7 +22,7 @@ from wellindex.surroundings import off_side, surroundings
 from wellindex.units import kinds
 from wellindex.units.answers import as_quantity
 from wellindex.units.boundary import reads
-from wellindex.units.checks import Checks, Tally, warn
+from wellindex.units.checks import Tally, warn
 
 Array = np.ndarray[Any, Any]
 
@@ -259,7 +259,7 @@ def _net_permeability(
 
 
 def _rows(
-    check: Checks,
+    check: Tally,
     found: crossing.Rows,
     grid: Grid,
     crossed: Crossed,
@@ -267,15 +267,14 @@ def _rows(
     rw: Array,
     skin: Array,
 ) -> Rows:
-    needed = np.isnan(crossed.k).any(axis=0)
-    check.refuse(
-        needed & np.isnan(along_axis(crossed).k_normal),
-        'invalid="nan" keeps the other rows: a block on the path has no valid permeability',
-    )
     length = found.length
     by_method = along_axis(crossed) if method == "axis" else projected(check, crossed, length, rw)
+    check.refuse(
+        np.isnan(by_method.k_normal),
+        'invalid="nan" keeps the other rows: a block on the path has no valid permeability',
+    )
     flow_resistance(check, by_method.r0, rw, skin, by_method.k_normal)
-    lost = check.lost if isinstance(check, Tally) and check.lost is not None else False
+    lost = False if check.lost is None else check.lost
     return Rows(
         cell=found.cell,
         md_in=found.md_in,
